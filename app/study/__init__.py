@@ -1,0 +1,1 @@
+"""What a manager talks about: studies, questions, plans, figures. No Streamlit, SQL or plotly."""

@@ -1,0 +1,47 @@
+"""What figure is asked for."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import StrEnum
+
+
+class Statistic(StrEnum):
+    """What is estimated."""
+
+    SHARE = "share"
+    AVERAGE = "average"
+    TOTAL = "total"
+    MEDIAN = "median"
+
+
+@dataclass(frozen=True, slots=True)
+class FigureRequest:
+    """One figure, named completely.
+
+    Parameters
+    ----------
+    question : str
+        Key of the question.
+    statistic : Statistic
+        What is estimated.
+    answers : tuple of str
+        Codes counted together; shares only.
+    group_question, group_answer : str
+        Who the figure is about: an answer of another question; "" for everyone.
+    confidence : float
+        Confidence level.
+    method : str
+        Interval method of a share.
+    missing_counted : bool
+        True when "don't know" and "refused" stay in the base of a share.
+    """
+
+    question: str
+    statistic: Statistic
+    answers: tuple[str, ...] = ()
+    group_question: str = ""
+    group_answer: str = ""
+    confidence: float = 0.95
+    method: str = "wilson"
+    missing_counted: bool = False

@@ -1,0 +1,1 @@
+"""Streamlit pieces: functions that show data and return what was chosen."""
