@@ -35,6 +35,8 @@ class FigureRequest:
         Interval method of a share.
     missing_counted : bool
         True when "don't know" and "refused" stay in the base of a share.
+    split_by : str
+        Key of the question whose groups stand in the rows under the figure; "" for none.
     """
 
     question: str
@@ -45,3 +47,4 @@ class FigureRequest:
     confidence: float = 0.95
     method: str = "wilson"
     missing_counted: bool = False
+    split_by: str = ""

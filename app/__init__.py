@@ -1,0 +1,1 @@
+"""The dashboard: everything around the estimators."""

@@ -1,0 +1,89 @@
+"""A parsed table, column by column: the different cells of each and which row holds which.
+
+Answers repeat, so work on the different cells of a column is far less than work on all cells.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+import pyarrow as pa  # type: ignore[import-untyped]
+import pyarrow.compute as pc  # type: ignore[import-untyped]
+
+_BLANK = r"^[\s\x00-\x1f\x7f\x{00a0}\x{202f}\x{2007}\x{feff}]*$"
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class CellColumn:
+    """The cells of one column.
+
+    Parameters
+    ----------
+    distinct : pyarrow array of str
+        Different cells, in order of appearance.
+    codes : array
+        (n rows,) unsigned int: position of each row's cell in ``distinct``.
+    """
+
+    distinct: pa.Array
+    codes: np.ndarray
+
+    def counts(self) -> np.ndarray:
+        """Return (distinct,) how many rows hold each cell."""
+        return np.bincount(self.codes, minlength=len(self.distinct))
+
+    def cell(self, row: int) -> str:
+        """Return one cell."""
+        return str(self.distinct[int(self.codes[row])].as_py())
+
+    def blank(self) -> np.ndarray:
+        """Return (distinct,) bool: cells of spaces, or of nothing at all."""
+        return as_flags(pc.match_substring_regex(self.distinct, _BLANK))
+
+    def rows_with(self, flags: np.ndarray) -> np.ndarray:
+        """Return (n rows,) bool: rows whose cell is flagged in (distinct,) ``flags``."""
+        return np.asarray(flags[self.codes])
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class CellTable:
+    """A table of cells as they stand in the file.
+
+    Parameters
+    ----------
+    columns : tuple of CellColumn
+        One per column of the table.
+    lines : array
+        (n rows,) int: line of the file on which a row begins, from 1.
+    """
+
+    columns: tuple[CellColumn, ...]
+    lines: np.ndarray
+
+    def keep(self, rows: np.ndarray) -> CellTable:
+        """Return the table with the rows flagged in (n rows,) ``rows`` only."""
+        if rows.all():
+            return self
+        columns = tuple(replace(c, codes=c.codes[rows]) for c in self.columns)
+        return CellTable(columns, self.lines[rows])
+
+    def row(self, at: int) -> tuple[str, ...]:
+        """Return the cells of one row."""
+        return tuple(column.cell(at) for column in self.columns)
+
+
+def as_flags(array: pa.Array) -> np.ndarray:
+    """Return a boolean array of pyarrow as numpy's, missing as False."""
+    return np.asarray(array.fill_null(False).to_numpy(zero_copy_only=False), dtype=bool)
+
+
+def column_of(chunks: pa.ChunkedArray) -> CellColumn:
+    """Return a column from chunks that pyarrow has dictionary-encoded."""
+    if chunks.num_chunks == 0:
+        return CellColumn(pa.array([], pa.string()), np.zeros(0, np.uint8))
+    unified = chunks.unify_dictionaries() if chunks.num_chunks > 1 else chunks
+    distinct = unified.chunk(0).dictionary
+    kind = np.min_scalar_type(max(len(distinct) - 1, 0))
+    codes = [chunk.indices.to_numpy().astype(kind) for chunk in unified.chunks]
+    return CellColumn(distinct, codes[0] if len(codes) == 1 else np.concatenate(codes))

@@ -1,0 +1,59 @@
+"""Figure: the number, the sentence, the fan, and what stands beside it."""
+
+import streamlit as st
+
+from app.store import StoreError
+from app.study.figure_steps import steps_of
+from app.study.figures import FigureError, compute_figure
+from app.study.sentences import describe
+from app.widgets import figure_view, layout
+from app.widgets.cached_work import database
+from app.widgets.figure_address import from_address
+from app.widgets.figure_pickers import show_pickers
+from app.widgets.figure_rails import show_rails
+from app.widgets.keeping import show_keep
+
+opened = layout.open_study()
+layout.dress()
+layout.journey("figure", opened)
+layout.show_later_message()
+file = layout.file_first(opened)
+data = opened.data()
+request = from_address(data)
+if request is None:
+    st.title("Figure")
+    layout.problem("No question of this file can be counted: look at the Questions screen.")
+    st.page_link(
+        "screens/questions.py", label="Questions", query_params={"study": opened.study.id}
+    )
+    st.stop()
+
+show_pickers(data, request)
+layout.show_standing(data, request, opened)
+left, right = st.columns([8, 4], gap="large")
+try:
+    figure = compute_figure(data, request)
+    text = describe(data, figure)
+except FigureError as error:
+    with left:
+        layout.problem(str(error))
+    figure = None
+if figure is not None:
+    with left:
+        figure_view.show_number(data, figure, text)
+        figure_view.show_fan(data, figure, text)
+with right:
+    if figure is not None:
+        try:
+            show_keep(database(), opened.study, data, request, text)
+        except StoreError as error:
+            layout.store_problem(error)
+    question = data.question(request.question)
+    rows = show_rails(data, request, question) if question is not None else ()
+if figure is not None:
+    with st.expander("How this number came about"):
+        figure_view.show_steps(steps_of(data, figure, file_name=file.file_name))
+    with st.expander("Numbers as a table"):
+        figure_view.show_rows_table(rows, data.study.decimal_mark)
+    with st.expander("Method"):
+        figure_view.show_method(data, figure)

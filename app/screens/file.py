@@ -1,0 +1,72 @@
+"""Fieldwork file: drop it, see how it was read and what was repaired, go on to a first figure."""
+
+import streamlit as st
+
+from app.intake import FieldworkFileError
+from app.store import StoreError
+from app.study.number_format import write_count
+from app.widgets import address, file_reading, layout
+from app.widgets.cached_work import database, read_file
+from app.widgets.deliveries import deliver
+from app.widgets.first_figure import show_first_figure
+
+
+def show_drop(study_id: str, label: str) -> None:
+    """Take a file; a refused one leaves everything as it was."""
+    round_number = int(st.session_state.get("upload_round", 0))
+    upload = st.file_uploader(label, key=f"upload_{round_number}", accept_multiple_files=False)
+    if upload is None:
+        return
+    try:
+        delivery = deliver(database(), study_id, upload.getvalue(), upload.name)
+    except (FieldworkFileError, StoreError) as error:
+        layout.problem(str(error))
+        return
+    st.session_state["upload_round"] = round_number + 1
+    if delivery.changes:
+        layout.later(" ".join(delivery.changes))
+    address.write(study=delivery.study_id)
+    st.rerun()
+
+
+if not address.read("study"):
+    layout.dress()
+    with st.container(horizontal=True, key="journey"):
+        st.page_link("screens/studies.py", label="Studies")
+    st.title("New study")
+    layout.say("Drop the file your fieldwork house sent: text with columns, such as .csv or .txt.")
+    show_drop("", "Fieldwork file")
+    st.stop()
+
+opened = layout.open_study()
+layout.dress()
+layout.journey("file", opened)
+st.title("Fieldwork file")
+layout.show_later_message()
+if opened.file is None:
+    show_drop(opened.study.id, "Fieldwork file")
+    st.stop()
+
+file = opened.file
+read = read_file(file)
+st.html(
+    f'<p class="hr-sentence"><b>{write_count(file.rows)}</b> answers in '
+    f"<b>{write_count(file.columns)}</b> columns, from {layout.as_html(file.file_name)}</p>"
+    f'<p class="hr-soft hr-small">received {file.received_at:%d %B %Y, %H:%M} UTC \u00b7 '
+    f"SHA-256 {file.fingerprint[:16]}\u2026</p>"
+)
+show_first_figure(opened)
+left, right = st.columns(2, gap="large")
+with left:
+    st.subheader("How it was read")
+    file_reading.show_decisions(read)
+    with st.expander("Read it another way"):
+        file_reading.show_another_reading(database(), file, read)
+with right:
+    st.subheader("Repairs and remarks")
+    file_reading.show_remarks(read)
+st.subheader("First rows")
+file_reading.show_first_rows(read.answers)
+with st.expander("A new delivery for this study"):
+    layout.say("Questions, plan and kept figures stay, matched by column name.")
+    show_drop(opened.study.id, "Newer fieldwork file")

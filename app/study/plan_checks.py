@@ -1,0 +1,193 @@
+"""Contradictions between a sampling plan and the file, each tied to the field that mends it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+
+from app.study.number_format import write_count
+from app.study.sampling_plan import SamplingMethod, SamplingPlan
+
+
+@dataclass(frozen=True, slots=True)
+class PlanProblem:
+    """One contradiction.
+
+    Parameters
+    ----------
+    field : str
+        Field of the plan that mends it: "universe_size", "strata", "weights_column" ...
+    sentence : str
+        What is wrong, where, and what to do.
+    blocks : bool
+        True when figures fall back to a simpler plan until it is mended.
+    """
+
+    field: str
+    sentence: str
+    blocks: bool = True
+
+
+def check_plan(plan: SamplingPlan, answers: pd.DataFrame) -> tuple[PlanProblem, ...]:
+    """Return every contradiction between the plan and the rows figures are made from.
+
+    Parameters
+    ----------
+    plan : SamplingPlan
+        What the manager told.
+    answers : DataFrame
+        (n rows) the answers as read.
+    """
+    checks = (_universe_problems, _strata_problems, _weight_problems, _cluster_problems)
+    return tuple(problem for check in checks for problem in check(plan, answers))
+
+
+def universe_from_strata(plan: SamplingPlan) -> int | None:
+    """Return the sum of the stratum counts, or None while one of them is unknown."""
+    sizes = [s.population_size for s in plan.strata]
+    if not plan.strata_column or not sizes or any(size is None for size in sizes):
+        return None
+    return sum(size for size in sizes if size is not None)
+
+
+def known_universe(plan: SamplingPlan) -> int | None:
+    """Return the size of the universe by the plan, from its strata where those are complete."""
+    by_strata = universe_from_strata(plan)
+    return by_strata if by_strata is not None else plan.universe_size
+
+
+def stratum_rows(plan: SamplingPlan, answers: pd.DataFrame) -> dict[str, int]:
+    """Return how many rows each stratum of the file has, by label."""
+    if plan.strata_column not in answers:
+        return {}
+    labels = label_texts(answers[plan.strata_column])
+    return {str(k): int(v) for k, v in labels[labels != ""].value_counts(sort=False).items()}
+
+
+def label_texts(column: pd.Series) -> pd.Series:
+    """Return a column as labels: whole numbers without decimals, blanks as ""."""
+    if pd.api.types.is_numeric_dtype(column):
+        return column.map(_number_label, na_action="ignore").fillna("").astype(str)
+    return column.fillna("").astype(str).str.strip()
+
+
+def _number_label(value: float) -> str:
+    return str(int(value)) if value == int(value) else repr(float(value))
+
+
+def _universe_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+    size, rows = plan.universe_size, len(answers)
+    if size is not None and size < rows and not plan.replacement:
+        yield PlanProblem(
+            "universe_size",
+            f"The file has {write_count(rows)} answers but the universe only "
+            f"{write_count(size)}: correct the universe, or say that each could be drawn twice.",
+        )
+    total = universe_from_strata(plan)
+    if size is not None and total is not None and total != size:
+        yield PlanProblem(
+            "universe_size",
+            f"The strata add up to {write_count(total)} but the universe is given as "
+            f"{write_count(size)}: correct one of them. Until then the strata count.",
+            blocks=False,
+        )
+
+
+def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+    column = plan.strata_column
+    if not column:
+        return
+    if column not in answers:
+        yield PlanProblem("strata_column", f"The file has no column {column}: choose another.")
+        return
+    asked = stratum_rows(plan, answers)
+    yield from _unlabelled_rows(column, answers)
+    if not _sizes_are_needed(plan):
+        return
+    sizes = {s.label: s.population_size for s in plan.strata}
+    for label, rows in asked.items():
+        yield from _stratum_problem(label, rows, sizes.get(label), plan)
+    for label, population in sizes.items():
+        if label not in asked and population:
+            yield PlanProblem(
+                "strata",
+                f"{label}: {write_count(population)} in the universe but no answer in the file: "
+                "merge it with another stratum or take it out.",
+            )
+
+
+def _sizes_are_needed(plan: SamplingPlan) -> bool:
+    if plan.weights_column or plan.method in (SamplingMethod.QUOTA, SamplingMethod.NOT_SURE):
+        return False
+    return plan.method is not SamplingMethod.GROUPS
+
+
+def _unlabelled_rows(column: str, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+    blank = int((label_texts(answers[column]) == "").sum())
+    if blank:
+        yield PlanProblem(
+            "strata_column",
+            f"{write_count(blank)} answers have no {column}: fill it in the file, or do not "
+            "separate the draw by it.",
+        )
+
+
+def _stratum_problem(
+    label: str, rows: int, size: int | None, plan: SamplingPlan
+) -> Iterator[PlanProblem]:
+    if size is None:
+        yield PlanProblem(
+            "strata",
+            f"{label}: {write_count(rows)} answers but no universe count: "
+            "type it or merge the stratum.",
+        )
+    elif size < rows and not plan.replacement:
+        yield PlanProblem(
+            "strata",
+            f"{label}: {write_count(rows)} answers but only {write_count(size)} in the universe: "
+            "correct the count.",
+        )
+
+
+def _weight_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+    column = plan.weights_column
+    if not column:
+        return
+    if column not in answers:
+        yield PlanProblem("weights_column", f"The file has no column {column}: choose another.")
+        return
+    weights = pd.to_numeric(answers[column], errors="coerce").to_numpy(dtype=float)
+    bad = np.flatnonzero(~(weights > 0) | ~np.isfinite(weights))
+    if bad.size:
+        rows = ", ".join(str(i + 1) for i in bad[:5]) + (" ..." if bad.size > 5 else "")
+        yield PlanProblem(
+            "weights_column",
+            f"{write_count(bad.size)} weights in {column} are missing, zero or negative "
+            f"(answers {rows}): mend them in the file, or choose another column.",
+        )
+
+
+def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+    if plan.method is not SamplingMethod.GROUPS:
+        return
+    column = plan.clusters_column
+    if not column or column not in answers:
+        yield PlanProblem("clusters_column", "Say which column names the group drawn first.")
+        return
+    labels = label_texts(answers[column])
+    groups = int(labels[labels != ""].nunique())
+    if (labels == "").any():
+        yield PlanProblem(
+            "clusters_column",
+            f"{write_count(int((labels == '').sum()))} answers have no {column}: fill it in the "
+            "file, or choose another column.",
+        )
+    if plan.universe_clusters is not None and plan.universe_clusters < groups:
+        yield PlanProblem(
+            "universe_clusters",
+            f"The file has {write_count(groups)} groups but the universe only "
+            f"{write_count(plan.universe_clusters)}: correct the number.",
+        )

@@ -1,0 +1,71 @@
+"""The only cache: the open store, files as read, studies ready to compute with.
+
+Keys are texts that name their content completely; arrays and tables are never hashed.
+"""
+
+from __future__ import annotations
+
+import json
+from dataclasses import replace
+from datetime import UTC, datetime
+from pathlib import Path
+
+import streamlit as st
+
+from app.intake import FieldworkFile, Reading, read_fieldwork_file
+from app.store import Database, open_database
+from app.study.questions import Question
+from app.study.records import from_json, from_record, to_json
+from app.study.sampling_plan import SamplingPlan
+from app.study.study import Study, StudyFile
+from app.study.study_data import StudyData, prepare_study
+
+_data_folder = Path()
+_EPOCH = datetime(2000, 1, 1, tzinfo=UTC)
+_NOBODY = Study("", "", _EPOCH, _EPOCH, 0)  # the prepared rows do not depend on the study
+
+
+def use_data_folder(folder: Path) -> None:
+    """Name the folder the store is kept in; the entry script does so on every run."""
+    global _data_folder
+    _data_folder = folder
+
+
+def database() -> Database:
+    """Return the open store."""
+    return _open(str(_data_folder))
+
+
+@st.cache_resource(show_spinner=False)
+def _open(folder: str) -> Database:
+    return open_database(Path(folder))
+
+
+def read_file(file: StudyFile) -> FieldworkFile:
+    """Return a stored file as read; the table is shared and must not be changed."""
+    return _read(file.fingerprint, file.file_name, file.reading)
+
+
+@st.cache_resource(max_entries=6, show_spinner="Reading the file")
+def _read(fingerprint: str, file_name: str, reading: str) -> FieldworkFile:
+    data = database().file_bytes(fingerprint)
+    return read_fieldwork_file(data, file_name=file_name, reading=Reading.from_json(reading))
+
+
+def study_data(study: Study, file: StudyFile) -> StudyData:
+    """Return a study ready to compute with, as it is stored now."""
+    questions = database().questions(study.id)
+    plan = database().plan(study.id).plan
+    data = _prepare(
+        file.fingerprint, file.file_name, file.reading, to_json(list(questions)), to_json(plan)
+    )
+    return replace(data, study=study)
+
+
+@st.cache_resource(max_entries=8, show_spinner="Preparing the study")
+def _prepare(
+    fingerprint: str, file_name: str, reading: str, questions: str, plan: str
+) -> StudyData:
+    read = _read(fingerprint, file_name, reading)
+    asked = tuple(from_record(Question, record) for record in json.loads(questions))
+    return prepare_study(_NOBODY, asked, from_json(SamplingPlan, plan), read.answers)

@@ -1,0 +1,105 @@
+"""A fieldwork file arrives: read, understood, stored, and what it means for the study."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import PurePath
+
+from app.intake import FieldworkFile, Reading, read_fieldwork_file
+from app.store import Database
+from app.study.question_guessing import guess_questions
+from app.study.sample_studies import SampleStudy
+from app.study.study import StudyFile
+from app.study.study_changes import carry_over
+
+
+@dataclass(frozen=True, slots=True)
+class Delivery:
+    """What came of a file.
+
+    Parameters
+    ----------
+    study_id : str
+        The study it belongs to now.
+    changes : tuple of str
+        What a second file changed, one sentence each; empty for a first one.
+    """
+
+    study_id: str
+    changes: tuple[str, ...]
+
+
+def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> Delivery:
+    """Read a file and store it with its questions; nothing is stored if it cannot be read.
+
+    Parameters
+    ----------
+    database : Database
+        The store.
+    study_id : str
+        The study it belongs to; "" makes a new one named after the file.
+    data : bytes
+        As uploaded.
+    file_name : str
+        As uploaded.
+
+    Raises
+    ------
+    FieldworkFileError
+        When the file cannot be read.
+    """
+    name = PurePath(file_name.replace("\\", "/")).name or "file"
+    read = read_fieldwork_file(data, file_name=name)
+    guessed = guess_questions(read.answers, read.question_texts)
+    study = study_id or database.create_study(_name_from(name)).id
+    before = database.questions(study)
+    database.add_file(
+        study,
+        data,
+        file_name=name,
+        reading=read.reading.to_json(),
+        rows=len(read.answers),
+        columns=read.answers.shape[1],
+    )
+    if not before:
+        database.replace_questions(study, guessed)
+        return Delivery(study, ())
+    carried = carry_over(before, guessed)
+    database.replace_questions(study, carried.questions)
+    return Delivery(study, tuple(carried.sentences))
+
+
+def read_again(database: Database, file: StudyFile, reading: Reading) -> FieldworkFile:
+    """Read a stored file another way and keep what it now says.
+
+    Raises
+    ------
+    FieldworkFileError
+        When it cannot be read that way; the old reading stays.
+    """
+    data = database.file_bytes(file.fingerprint)
+    read = read_fieldwork_file(data, file_name=file.file_name, reading=reading)
+    guessed = guess_questions(read.answers, read.question_texts)
+    database.save_reading(
+        file,
+        reading=read.reading.to_json(),
+        rows=len(read.answers),
+        columns=read.answers.shape[1],
+    )
+    carried = carry_over(database.questions(file.study_id), guessed)
+    database.replace_questions(file.study_id, carried.questions)
+    return read
+
+
+def open_sample(database: Database, sample: SampleStudy) -> str:
+    """Make a study from a sample, plan included, and return its id."""
+    path = sample.files[0]
+    study = database.create_study(sample.name)
+    deliver(database, study.id, path.read_bytes(), path.name)
+    database.save_plan(study.id, sample.plan, database.plan(study.id).version)
+    return study.id
+
+
+def _name_from(file_name: str) -> str:
+    stem = PurePath(file_name).stem.replace("_", " ").replace("-", " ").strip()
+    return (stem[:1].upper() + stem[1:]) or "New study"

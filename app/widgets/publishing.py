@@ -1,0 +1,171 @@
+"""Publishing: freeze the kept figures, make a link, show it once, withdraw it."""
+
+from __future__ import annotations
+
+from datetime import UTC, datetime, timedelta
+
+import streamlit as st
+
+from app.sharing.frozen_readouts import Draft, FigureError, freeze, moment_words
+from app.sharing.link_tokens import hash_token, make_token
+from app.sharing.readout_page import render_page
+from app.sharing.readout_style import READOUT_STYLE
+from app.store import Database, StoreError
+from app.study.frozen import FrozenReadout
+from app.study.records import from_json, to_json
+from app.study.study import KeptFigure, Readout
+from app.study.study_data import StudyData
+from app.widgets import layout
+from app.widgets.plain_text import as_html
+from estimators import METHODS_VERSION
+
+DAYS = {"7": "7 days", "30": "30 days", "90": "90 days", "0": "no end"}
+
+
+def show_publish(database: Database, data: StudyData, kept: tuple[KeptFigure, ...]) -> None:
+    """Show title, expiry and the button that publishes."""
+    title = st.text_input(
+        "Title of the readout", data.study.name, key="readout_title", max_chars=120
+    )
+    days = st.selectbox(
+        "The link opens for", list(DAYS), index=1, format_func=DAYS.__getitem__, key="link_days"
+    )
+    st.button(
+        "Publish",
+        type="primary",
+        key="publish",
+        on_click=publish,
+        args=(database, data, kept, title, int(days)),
+    )
+
+
+def publish(
+    database: Database, data: StudyData, kept: tuple[KeptFigure, ...], title: str, days: int
+) -> None:
+    """Freeze and keep the readout; the link is put aside to be shown once."""
+    now = datetime.now(UTC)
+    token = make_token()
+
+    def make(number: int) -> tuple[str, str]:
+        draft = Draft(title.strip() or data.study.name, number, now)
+        frozen = freeze(data, kept, draft)
+        return to_json(frozen), render_page(frozen, style_href=READOUT_STYLE.path)
+
+    try:
+        readout = database.publish(
+            data.study.id,
+            make,
+            title=title.strip() or data.study.name,
+            methods_version=METHODS_VERSION,
+            token_hash=hash_token(token),
+            expires_at=now + timedelta(days=days) if days else None,
+        )
+    except FigureError as error:
+        layout.later(f"Nothing was published. {error}")
+        return
+    except StoreError as error:
+        layout.later(f"Nothing was published. {error.sentence}")
+        return
+    st.session_state["new_link"] = [readout.id, token]
+
+
+def show_new_link(readouts: tuple[Readout, ...]) -> None:
+    """Show a new link once; the next action on the screen takes it away."""
+    readout_id, token = st.session_state.pop("new_link", ["", ""])
+    readout = next((r for r in readouts if r.id == readout_id), None)
+    if readout is None:
+        return
+    with st.container(border=True, key="new_link_card"):
+        st.html(
+            f'<p class="hr-sentence">Readout {readout.number} is published. This is its link; it '
+            "is shown only now, because only its fingerprint is kept.</p>"
+        )
+        st.code(f"{_origin()}/readout/{token}", language=None, wrap_lines=True)
+        st.html(
+            '<p class="hr-soft">This link opens only on this computer. To send the readout, take '
+            "the file below.</p>"
+        )
+
+
+def _origin() -> str:
+    address = str(st.context.url or "http://127.0.0.1:8501")
+    scheme, _, rest = address.partition("://")
+    return f"{scheme}://{rest.partition('/')[0]}"
+
+
+def show_published(database: Database, readouts: tuple[Readout, ...]) -> None:
+    """Show every published readout with what its link does now."""
+    for readout in readouts:
+        with st.container(border=True, key=f"readout_{readout.id}"):
+            left, right = st.columns([3, 2], vertical_alignment="center")
+            with left:
+                st.html(
+                    f'<p class="hw-tight"><b>Readout {readout.number}</b> '
+                    f"{as_html(readout.title)}</p>"
+                    f'<p class="hr-soft hw-tight">frozen {moment_words(readout.published_at)} '
+                    f"\u00b7 {as_html(_link_words(readout))}</p>"
+                )
+            with right, st.container(horizontal=True, horizontal_alignment="right"):
+                _show_actions(database, readout)
+
+
+def _link_words(readout: Readout) -> str:
+    now = datetime.now(UTC)
+    if readout.revoked_at is not None:
+        return f"link withdrawn {moment_words(readout.revoked_at)}"
+    if readout.expires_at is None:
+        return "link open without end"
+    verb = "expired" if readout.expires_at <= now else "opens until"
+    return f"link {verb} {moment_words(readout.expires_at)}"
+
+
+def _show_actions(database: Database, readout: Readout) -> None:
+    page = render_page(from_json(FrozenReadout, readout.frozen), style_href=None)
+    st.download_button(
+        "Page as a file",
+        page.encode(),
+        file_name=f"readout-{readout.number}-{readout.id[:8]}.html",
+        mime="text/html",
+        key=f"file_{readout.id}",
+        on_click="ignore",
+        help="For e-mail. A file cannot expire or be withdrawn.",
+    )
+    st.button(
+        "New link",
+        key=f"link_{readout.id}",
+        on_click=_new_link,
+        args=(database, readout),
+        help="The link before it stops to open.",
+    )
+    if readout.revoked_at is None:
+        st.button(
+            "Revoke",
+            key=f"revoke_{readout.id}",
+            on_click=_revoke,
+            args=(database, readout),
+            help="Nobody can open it from now on; copies and files remain.",
+        )
+
+
+def _new_link(database: Database, readout: Readout) -> None:
+    token = make_token()
+    try:
+        database.replace_link(
+            readout.id, hash_token(token), datetime.now(UTC) + timedelta(days=30)
+        )
+    except StoreError as error:
+        layout.later(error.sentence)
+        return
+    st.session_state["new_link"] = [readout.id, token]
+
+
+def _revoke(database: Database, readout: Readout) -> None:
+    try:
+        database.revoke_readout(readout.id)
+    except StoreError as error:
+        layout.later(error.sentence)
+        return
+    layout.later(
+        f"The link of readout {readout.number} is withdrawn: nobody can open it from now on. "
+        "Copies and files remain."
+    )

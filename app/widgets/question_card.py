@@ -1,0 +1,172 @@
+"""The chosen question: what it holds, what is proposed, and how to change it."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+import pandas as pd
+import streamlit as st
+
+from app.store import Database, StoredQuestion, StoreError
+from app.study.number_format import NO_BREAK, write_count, write_share
+from app.study.question_guessing import guess_questions
+from app.study.question_values import QuestionValues, read_values
+from app.study.questions import Question, QuestionKind
+from app.widgets import address, layout
+from app.widgets.plain_text import as_html, as_typed
+
+MOST_BARS = 14
+
+
+def show_question(
+    database: Database,
+    study_id: str,
+    stored: StoredQuestion,
+    questions: tuple[Question, ...],
+    answers: pd.DataFrame,
+) -> None:
+    """Show one question with its evidence, its answers and its open proposals."""
+    question = stored.question
+    st.html(
+        f'<h2 class="hw-card-head">{as_html(question.text)}</h2>'
+        f'<p class="hr-soft">{as_html(question.kind.value)} \u2013 {as_html(question.evidence)}</p>'
+    )
+    if set(question.columns) <= set(answers.columns):
+        _show_answers(read_values(question, answers))
+    else:
+        layout.problem("The current file does not have this question; figures on it wait.")
+    for number, proposal in enumerate(question.proposals):
+        st.html(
+            f'<div class="hw-proposal" data-proposal="{number}"><p>{as_html(proposal.evidence)}</p>'
+            f'<p class="hr-soft">{as_html(proposal.consequence)}</p></div>'
+        )
+    if question.needs_you:
+        _show_choice(database, study_id, stored, questions)
+    with st.container(horizontal=True):
+        aside = "Take it back" if question.set_aside else "Set it aside"
+        st.button(
+            aside,
+            key="set_aside",
+            on_click=_save,
+            args=(database, study_id, stored, replace(question, set_aside=not question.set_aside)),
+        )
+        st.button(
+            "Undo: read it afresh from the file",
+            key="read_afresh",
+            on_click=_read_afresh,
+            args=(database, study_id, stored, answers),
+        )
+
+
+def _show_choice(
+    database: Database, study_id: str, stored: StoredQuestion, questions: tuple[Question, ...]
+) -> None:
+    question = stored.question
+    left = sum(q.needs_you for q in questions) - 1
+    names = [_proposed(question), "as it is in the file"]
+    choice = st.radio("Count it", names, key=f"choice_{question.columns[0]}_{stored.version}")
+    settled = question.settled(accept=choice == names[0])
+    label = f"Accept, next ({left})" if left else "Accept"
+    st.button(
+        label,
+        type="primary",
+        key="accept",
+        on_click=_accept,
+        args=(database, study_id, stored, settled, questions),
+    )
+
+
+def _proposed(question: Question) -> str:
+    words = [f"{as_typed(p.code)} as {p.reason.value}" for p in question.proposals if p.reason]
+    words += [f"as {p.kind.value}" for p in question.proposals if p.kind is not None]
+    return ", ".join(words)
+
+
+def _accept(
+    database: Database,
+    study_id: str,
+    stored: StoredQuestion,
+    settled: Question,
+    questions: tuple[Question, ...],
+) -> None:
+    if _save(database, study_id, stored, settled):
+        address.write(q=_next(stored.question, questions))
+
+
+def _next(question: Question, questions: tuple[Question, ...]) -> str:
+    """Return the question to settle next: after this one, else the first one left."""
+    keys = [q.key for q in questions]
+    place = keys.index(question.key) if question.key in keys else 0
+    around = [*questions[place + 1 :], *questions[:place]]
+    return next((q.key for q in around if q.needs_you), question.key)
+
+
+def _save(database: Database, study_id: str, stored: StoredQuestion, question: Question) -> bool:
+    try:
+        database.save_question(study_id, question, version=stored.version)
+    except StoreError as error:
+        layout.later(error.sentence)
+        return False
+    return True
+
+
+def _read_afresh(
+    database: Database, study_id: str, stored: StoredQuestion, answers: pd.DataFrame
+) -> None:
+    columns = [c for c in stored.question.columns if c in answers]
+    texts = {c: stored.question.text for c in columns if len(columns) == 1}
+    fresh = next(
+        (q for q in guess_questions(answers[columns], texts) if q.columns == tuple(columns)), None
+    )
+    if fresh is None:
+        layout.later("This question cannot be read afresh: the file has lost its columns.")
+        return
+    _save(database, study_id, stored, replace(fresh, key=stored.question.key))
+
+
+def _show_answers(values: QuestionValues) -> None:
+    """Show answers as bars in the colour of what people said, with who did not answer."""
+    question = values.question
+    base = int(values.answered.sum())
+    if question.kind in (QuestionKind.NUMBER, QuestionKind.WEIGHT):
+        lines = _number_lines(values, base)
+    elif question.kind in (QuestionKind.TEXT, QuestionKind.IDENTIFIER) or not base:
+        lines = ""
+    else:
+        lines = _bars(values, base)
+    missing = " \u00b7 ".join(
+        f"{write_count(int(rows.sum()))} {reason.value}"
+        for reason, rows in values.reasons.items()
+        if rows.any()
+    )
+    counted = (f"{write_count(base)} answered", missing)
+    text = as_html(" \u00b7 ".join(part for part in counted if part))
+    st.html(
+        f'{lines}<p class="hr-soft hr-small">{text}</p>'
+    )
+
+
+def _bars(values: QuestionValues, base: int) -> str:
+    parts = values.chosen[values.answered].sum(axis=0) / base
+    most = max(float(parts.max(initial=0)), 0.01)
+    shown = list(zip(values.question.answers, parts, strict=True))[:MOST_BARS]
+    rows = "".join(
+        f'<div class="hw-bar"><span class="hw-bar-name">{as_html(answer.label)}</span>'
+        f'<span class="hw-bar-line"><span style="width:{100 * part / most:.1f}%"></span></span>'
+        f'<span class="hw-bar-text">{write_share(part)}{NO_BREAK}%</span></div>'
+        for answer, part in shown
+    )
+    more = len(values.question.answers) - len(shown)
+    return rows + (f'<p class="hr-soft hr-small">and {more} more answers</p>' if more > 0 else "")
+
+
+def _number_lines(values: QuestionValues, base: int) -> str:
+    if not base:
+        return ""
+    numbers = values.numbers[values.answered]
+    low, middle, high = np.quantile(numbers, [0, 0.5, 1])
+    return (
+        f'<p class="hr-soft">from {low:,.6g} to {high:,.6g}, median {middle:,.6g}, '
+        f"average {numbers.mean():,.6g}</p>"
+    )

@@ -1,0 +1,224 @@
+"""The base of a figure, and the values that turn a mean, a ratio or a total into a plain sum.
+
+The variance of any of these estimates is the variance of the sum of its linearised values
+(Woodruff, R. S. (1971). Journal of the American Statistical Association 66, 411-414), so that
+:mod:`estimators.design_variance` needs to know sums only.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from estimators.array_checks import Bools, Floats, as_mask
+from estimators.cautions import GROUP_WITHOUT_ANSWERS, answers_missing
+from estimators.design_counts import BaseCounts, count_base
+from estimators.design_variance import variance_of_sum
+from estimators.results import Caution
+from estimators.sample_designs import SampleDesign
+
+_SAME = 1e-12
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class AnsweredBase:
+    """Who a figure is about and who of them answered, with the weights that follow.
+
+    Parameters
+    ----------
+    design : SampleDesign
+        The sample.
+    where : (n,) bool or None
+        Who the figure is about; None for everyone.
+    inside : (n,) bool or None
+        Who of them answered; None for everyone.
+    weights : (n,) float
+        Weights of those who answered, speaking for those who did not as well; else zero.
+    row_weights : (n,) float
+        The same, and the weight of the design for rows outside the base.
+    size : float
+        Sum of the weights: units of the universe the figure speaks for.
+    rows : int
+        Rows that answered.
+    asked : int
+        Rows the figure is about.
+    equal_weights : bool
+        Whether all who answered have the same weight.
+    counts : BaseCounts
+        Units, strata and fractions.
+    """
+
+    design: SampleDesign
+    where: Bools | None
+    inside: Bools | None
+    weights: Floats
+    row_weights: Floats
+    size: float
+    rows: int
+    asked: int
+    equal_weights: bool
+    counts: BaseCounts
+
+    @property
+    def universe_is_known(self) -> bool:
+        """Whether it is known what part of the universe was asked."""
+        design = self.design
+        counted = design.population_size is not None or design.stages.is_corrected
+        return counted and not design.relative_weights
+
+    @property
+    def part_asked(self) -> float:
+        """Rows over the units they speak for; 0 where the universe is unknown."""
+        return min(self.rows / self.size, 1.0) if self.universe_is_known and self.size > 0 else 0.0
+
+    @property
+    def cautions(self) -> tuple[Caution, ...]:
+        """What has to be known about the sample and the base."""
+        notes = [*self.design.cautions, *self.counts.cautions]
+        if self.rows < self.asked:
+            notes.append(answers_missing(self.asked, self.rows))
+            if _groups_without_answers(self.design, self.where, self.inside):
+                notes.append(GROUP_WITHOUT_ANSWERS)
+        return tuple(notes)
+
+
+def answered_base(
+    design: SampleDesign, where: ArrayLike | None, answered: ArrayLike | None
+) -> AnsweredBase:
+    """Find the base of a figure and its weights.
+
+    Parameters
+    ----------
+    design : SampleDesign
+        The sample.
+    where : (n,) bool, optional
+        Who the figure is about.
+    answered : (n,) bool, optional
+        Who gave an answer; does not matter outside ``where``.
+
+    Raises
+    ------
+    InputError
+        If a mask has other rows than the design or is not true or false.
+    """
+    about = as_mask(where, "where", design.n)
+    gave = as_mask(answered, "answered", design.n)
+    if design.has_zero_weights:  # such a row speaks for nobody
+        about = design.weights > 0 if about is None else about & (design.weights > 0)
+    inside = about if gave is None else (gave if about is None else about & gave)
+    weights, row_weights = _weights_of_answers(design, about, inside)
+    rows = design.n if inside is None else int(np.count_nonzero(inside))
+    found = weights if inside is None else weights[inside]
+    return AnsweredBase(
+        design=design,
+        where=about,
+        inside=inside,
+        weights=weights,
+        row_weights=row_weights,
+        size=float(weights.sum()),
+        rows=rows,
+        asked=design.n if about is None else int(np.count_nonzero(about)),
+        equal_weights=bool(rows > 0 and np.ptp(found) <= _SAME * found[0]),
+        counts=count_base(design.stages, about, inside),
+    )
+
+
+def mean_in_base(values: Floats, base: AnsweredBase) -> float:
+    """Return the weighted mean of the base, in two passes so that few digits are lost."""
+    found = values if base.inside is None else values[base.inside]
+    if base.equal_weights:
+        centre = float(found.mean())
+        return centre + float((found - centre).mean())
+    weights = base.weights if base.inside is None else base.weights[base.inside]
+    centre = float(weights @ found) / base.size
+    return centre + float(weights @ (found - centre)) / base.size
+
+
+def share_in_base(flags: Floats, base: AnsweredBase) -> float:
+    """Return the weighted share of ones in the base; zeros and ones only."""
+    if base.equal_weights:
+        return float(np.count_nonzero(flags)) / base.rows
+    return min(float(base.weights @ flags) / base.size, 1.0)
+
+
+def residuals_of_mean(values: Floats, mean: float, base: AnsweredBase) -> Floats:
+    """(n,) values minus their mean, zero outside the base."""
+    if base.inside is None:
+        return values - mean
+    return np.where(base.inside, values - mean, 0.0)
+
+
+def variance_of_mean(residuals: Floats, base: AnsweredBase) -> float:
+    """Variance of the weighted mean of the base whose residuals are given.
+
+    Carries the factor for subgroups, and is NaN where one unit is all there is to go by.
+    """
+    contributions = base.weights * residuals / base.size
+    variance = variance_of_sum(contributions, base.row_weights, base.design.stages, base.counts)
+    return variance * base.counts.subgroup_factor
+
+
+def variance_of_total(residuals: Floats, mean: float, base: AnsweredBase) -> float:
+    """Variance of the size of the base times its mean.
+
+    The answers vary over both random steps, being drawn and answering; the size of the base over
+    the first alone, because those who did not answer are known to belong to it.
+    """
+    stages, counts, weights = base.design.stages, base.counts, base.design.weights
+    answers = base.weights * residuals
+    size = _contributions_of_size(mean, base)
+    if base.rows == base.asked:
+        return variance_of_sum(answers + size, weights, stages, counts)
+    asked = count_base(stages, base.where, base.where)
+    both = variance_of_sum(answers, base.row_weights, stages, counts)
+    drawn = variance_of_sum(answers + size, weights, stages, asked)
+    return max(both + drawn - variance_of_sum(answers, weights, stages, asked), 0.0)
+
+
+def _contributions_of_size(mean: float, base: AnsweredBase) -> Floats:
+    """(n,) what each row adds to the total by belonging to the base with the mean answer."""
+    weights = base.design.weights
+    size = weights * mean if base.where is None else np.where(base.where, weights * mean, 0.0)
+    if base.design.scaled_weights:  # the weights always add up to the universe
+        size = size - weights * (mean * base.size / float(weights.sum()))
+    return size
+
+
+def _weights_of_answers(
+    design: SampleDesign, where: Bools | None, inside: Bools | None
+) -> tuple[Floats, Floats]:
+    """(n,) weights of those who answered, and the same with the weights of rows outside."""
+    weights = design.weights
+    if inside is None:
+        return weights, weights
+    if inside is where:
+        return np.where(inside, weights, 0.0), weights
+    if not design.weights_given:
+        weights = weights * _asked_per_answer(design, where, inside)
+    counted = np.where(inside, weights, 0.0)
+    asked = design.weights.sum() if where is None else design.weights @ where
+    if counted.any():
+        counted = counted * (asked / counted.sum())
+    return counted, np.where(inside, counted, design.weights)
+
+
+def _asked_per_answer(design: SampleDesign, where: Bools | None, inside: Bools) -> Floats:
+    """(n,) people asked for each answer, in the group within which response is random."""
+    group = design.stages.response_group
+    asked = np.bincount(group if where is None else group[where], minlength=group.max() + 1)
+    gave = np.bincount(group[inside], minlength=group.max() + 1)
+    return (asked / np.maximum(gave, 1))[group]
+
+
+def _groups_without_answers(
+    design: SampleDesign, where: Bools | None, inside: Bools | None
+) -> bool:
+    """Whether a stratum or cluster has people in the base and no answer from any of them."""
+    if inside is None:
+        return False
+    group = design.stages.response_group
+    asked = np.bincount(group if where is None else group[where], minlength=group.max() + 1)
+    gave = np.bincount(group[inside], minlength=group.max() + 1)
+    return bool(((asked > 0) & (gave == 0)).any())
