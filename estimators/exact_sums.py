@@ -35,7 +35,8 @@ class SumProbabilities:
     lowest : int
         The smallest possible sum.
     probabilities : (m,) float
-        Of ``lowest``, ``lowest + 1`` and so on up to the largest possible sum.
+        Of ``lowest``, ``lowest + 1`` and so on up to the largest possible sum; 0 where it cannot be
+        told from a rounding error.
     error : float
         Bound for the absolute error of each of them.
     """
@@ -297,4 +298,5 @@ def _inverted(
     first = (lowest - draws.n * draws.centre) % grid
     probabilities = np.roll(around, -first)[: highest - lowest + 1]
     error = 3 * _NOTHING + _ROUNDING * 2 * float(np.abs(values).sum()) / grid
-    return SumProbabilities(lowest, np.clip(probabilities, 0.0, 1.0), error)
+    noise = max(0.0, -float(probabilities.min()))  # what is negative is rounding, and so is as much
+    return SumProbabilities(lowest, np.where(probabilities > noise, probabilities, 0.0), error)

@@ -1,48 +1,8 @@
-"""Checks that every interval and sampling distribution shares, each message naming its argument."""
+"""The check of a sample against its universe that intervals from a summary share."""
 
 from __future__ import annotations
 
-import math
-
-from estimators.errors import InputError
-
-
-def check_confidence(confidence: float) -> None:
-    """Refuse a confidence level that is not strictly between 0 and 1.
-
-    Parameters
-    ----------
-    confidence : float
-        As given by the caller.
-
-    Raises
-    ------
-    InputError
-        If it is outside.
-    """
-    if not 0 < confidence < 1:
-        raise InputError(
-            "confidence", confidence, "must lie between 0 and 1", "write 95 percent as 0.95"
-        )
-
-
-def check_n(n: float) -> None:
-    """Refuse a number of answers or draws that is not whole and at least 1.
-
-    Parameters
-    ----------
-    n : int
-        As given by the caller.
-
-    Raises
-    ------
-    InputError
-        If it is not.
-    """
-    if not (math.isfinite(n) and n >= 1 and n % 1 == 0):
-        raise InputError(
-            "n", n, "must be a whole number, 1 or more", "give the number of answers in the sample"
-        )
+from estimators.array_checks import as_count
 
 
 def sampling_fraction(n: int, population_size: int | None, *, replacement: bool) -> float:
@@ -69,14 +29,5 @@ def sampling_fraction(n: int, population_size: int | None, *, replacement: bool)
     """
     if population_size is None:
         return 0.0
-    least = 1 if replacement else n
-    if not (
-        math.isfinite(population_size) and population_size >= least and population_size % 1 == 0
-    ):
-        raise InputError(
-            "population_size",
-            population_size,
-            f"must be a whole number, {least} or more",
-            "correct it, or say that units were drawn with replacement",
-        )
-    return 0.0 if replacement else n / population_size
+    size = as_count(population_size, "population_size", least=1 if replacement else n)
+    return 0.0 if replacement else n / size

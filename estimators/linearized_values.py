@@ -16,6 +16,7 @@ from estimators.array_checks import Bools, Floats, as_mask
 from estimators.cautions import GROUP_WITHOUT_ANSWERS, answers_missing
 from estimators.design_counts import BaseCounts, count_base
 from estimators.design_variance import variance_of_sum
+from estimators.response_variance import variances_of_both_phases
 from estimators.results import Caution
 from estimators.sample_designs import SampleDesign
 
@@ -62,6 +63,11 @@ class AnsweredBase:
     counts: BaseCounts
 
     @property
+    def follows_response(self) -> bool:
+        """Whether answers are missing and the weights follow from how many there are."""
+        return self.rows < self.asked and not self.design.weights_given
+
+    @property
     def universe_is_known(self) -> bool:
         """Whether it is known what part of the universe was asked."""
         design = self.design
@@ -71,7 +77,12 @@ class AnsweredBase:
     @property
     def part_asked(self) -> float:
         """Rows over the units they speak for; 0 where the universe is unknown."""
-        return min(self.rows / self.size, 1.0) if self.universe_is_known and self.size > 0 else 0.0
+        if not self.universe_is_known or self.size <= 0:
+            return 0.0
+        design = self.design
+        if design.is_simple and design.stages.is_corrected:  # the same, free of rounding
+            return float(self.counts.fractions[0])
+        return min(self.rows / self.size, 1.0)
 
     @property
     def cautions(self) -> tuple[Caution, ...]:
@@ -155,6 +166,9 @@ def variance_of_mean(residuals: Floats, base: AnsweredBase) -> float:
 
     Carries the factor for subgroups, and is NaN where one unit is all there is to go by.
     """
+    if base.follows_response:
+        drawn, later = _both_phases(residuals / base.size, np.zeros(base.design.n), base)
+        return drawn * _counts_of_asked(base).subgroup_factor + later
     contributions = base.weights * residuals / base.size
     variance = variance_of_sum(contributions, base.row_weights, base.design.stages, base.counts)
     return variance * base.counts.subgroup_factor
@@ -166,15 +180,34 @@ def variance_of_total(residuals: Floats, mean: float, base: AnsweredBase) -> flo
     The answers vary over both random steps, being drawn and answering; the size of the base over
     the first alone, because those who did not answer are known to belong to it.
     """
+    size = _contributions_of_size(mean, base)
+    if base.follows_response:
+        return sum(_both_phases(residuals, size, base))
     stages, counts, weights = base.design.stages, base.counts, base.design.weights
     answers = base.weights * residuals
-    size = _contributions_of_size(mean, base)
     if base.rows == base.asked:
         return variance_of_sum(answers + size, weights, stages, counts)
-    asked = count_base(stages, base.where, base.where)
+    asked = _counts_of_asked(base)
     both = variance_of_sum(answers, base.row_weights, stages, counts)
     drawn = variance_of_sum(answers + size, weights, stages, asked)
     return max(both + drawn - variance_of_sum(answers, weights, stages, asked), 0.0)
+
+
+def _both_phases(residuals: Floats, others: Floats, base: AnsweredBase) -> tuple[float, float]:
+    """Variance of the draw of those asked, and of the draw of the answers from them."""
+    design, inside = base.design, base.inside
+    if inside is None:
+        inside = np.ones(design.n, dtype=bool)
+    # Where a group gave no answer at all the others speak for it.
+    spoken = design.weights * _asked_per_answer(design, base.where, inside) @ inside
+    weights = design.weights * (base.size / spoken)
+    return variances_of_both_phases(
+        residuals, others, weights, (base.where, inside), design.stages, _counts_of_asked(base)
+    )
+
+
+def _counts_of_asked(base: AnsweredBase) -> BaseCounts:
+    return count_base(base.design.stages, base.where, base.where)
 
 
 def _contributions_of_size(mean: float, base: AnsweredBase) -> Floats:

@@ -99,9 +99,11 @@ def _listed_sums(
     size = int(counts.sum())
     states = _States(np.zeros(1, dtype=np.int64), np.zeros(1), np.ones(1))
     later = size - np.cumsum(counts)
+    if replacement:
+        later = np.where(later > 0, n, 0)  # any later value can fill up the sample
     for value, count, rest in zip(values, counts.tolist(), later.tolist(), strict=True):
         weights = _ways(count, size, n, replacement=replacement)
-        states = _extended(states, float(value), weights, n, n if replacement else rest)
+        states = _extended(states, float(value), weights, n, rest)
     return _merged(states.sums, states.weights, _SAME * n * float(np.abs(values).max()))
 
 

@@ -6,8 +6,9 @@ import math
 
 from scipy import special
 
+from estimators.array_checks import as_confidence, as_count
 from estimators.errors import InputError
-from estimators.interval_checks import check_confidence, check_n, sampling_fraction
+from estimators.interval_checks import sampling_fraction
 from estimators.results import Interval
 
 
@@ -58,12 +59,12 @@ def mean_interval(
     >>> round(interval.low, 3), round(interval.high, 3)
     (7.248, 7.552)
     """
-    check_n(n)
-    check_confidence(confidence)
-    _check_answers(mean, standard_deviation, n)
-    fraction = sampling_fraction(n, population_size, replacement=replacement)
-    half = _half_width(standard_deviation, n, fraction, confidence)
-    return Interval(mean - half, mean + half, confidence, "t")
+    answers = as_count(n, "n")
+    level = as_confidence(confidence)
+    _check_answers(mean, standard_deviation, answers)
+    fraction = sampling_fraction(answers, population_size, replacement=replacement)
+    half = _half_width(standard_deviation, answers, fraction, level)
+    return Interval(mean - half, mean + half, level, "t")
 
 
 def _half_width(deviation: float, n: int, fraction: float, confidence: float) -> float:

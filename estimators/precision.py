@@ -52,14 +52,15 @@ def precision_of_mean(variance: float, spread: float, base: AnsweredBase) -> Pre
     base : AnsweredBase
         The base.
     """
-    rows, unseen = base.rows, 1 - base.part_asked
+    rows = base.rows
     if base.counts.is_census:
         return Precision(math.inf, 1.0, float(rows))
     if math.isnan(variance) or spread <= 0 or variance < _NO_VARIATION * spread / rows:
         return Precision(*_stand_in(base), no_variation=True)
     equivalent = spread * rows / ((rows - 1) * variance)
-    if unseen > 0 and abs(equivalent * unseen / rows - 1) < _EXACT:
-        equivalent = rows / unseen
+    left, unseen = 1 - correction(base), 1 - base.part_asked
+    if left > 0 and abs(equivalent * left / rows - 1) < _EXACT:  # free of rounding
+        equivalent = rows / left
     effect = rows / (equivalent * unseen) if unseen > 0 else math.inf
     return Precision(equivalent, effect, rows / effect)
 
@@ -89,9 +90,11 @@ def precision_of_total(variance: float, values: Floats, base: AnsweredBase) -> P
 
 def stand_in_effect(base: AnsweredBase) -> float:
     """Loss by unequal weights and clusters, for a base whose answers show no variation."""
-    counts, weights = base.counts, base.weights
+    weights = base.weights
     loss = base.rows * float(weights @ weights) / base.size**2
-    per_unit = base.rows / float(counts.members.sum())
+    if base.equal_weights:
+        loss = 1.0
+    per_unit = base.rows / float(base.counts.members.sum())
     return loss * (1 + (per_unit - 1) * _CLUSTER_LIKENESS)
 
 

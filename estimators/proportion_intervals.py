@@ -13,9 +13,10 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 from scipy import special
 
+from estimators.array_checks import as_confidence, as_count
 from estimators.errors import InputError
 from estimators.hypergeometric_bounds import hypergeometric_bounds
-from estimators.interval_checks import check_confidence, check_n, sampling_fraction
+from estimators.interval_checks import sampling_fraction
 from estimators.proportion_methods import METHODS, Bounds, Numbers
 from estimators.results import Interval
 from estimators.share_evidence import ShareEvidence
@@ -63,7 +64,7 @@ def share_bounds(
         If the method is unknown or does not fit the sample, or confidence is not inside 0 to 1.
     """
     check_method(method)
-    check_confidence(confidence)
+    confidence = as_confidence(confidence)
     if method == "hypergeometric":
         return _exact_finite_bounds(evidence, confidence)
     share = np.asarray(_snapped(evidence.share))
@@ -113,8 +114,12 @@ def open_to_whole_counts(
     units = np.asarray(universe, dtype=float)
     base = np.asarray(base, dtype=float)
     seen = np.rint(np.asarray(share) * base)
-    fewest = np.maximum(np.floor(low * units + _WHOLE), seen)
-    most = np.minimum(np.ceil(high * units - _WHOLE), units - (base - seen))
+    possible = seen, units - (base - seen)
+    fewest = np.maximum(np.floor(low * units + _WHOLE), possible[0])
+    most = np.minimum(np.ceil(high * units - _WHOLE), possible[1])
+    closed = (fewest >= most) & (units > base)  # rounded to one count though some are unseen
+    fewest = np.where(closed, np.maximum(most - 1, possible[0]), fewest)
+    most = np.where(closed, np.minimum(fewest + 1, possible[1]), most)
     return (
         np.where(np.isnan(units), low, fewest / units),
         np.where(np.isnan(units), high, most / units),
@@ -177,6 +182,7 @@ def proportion_interval(  # noqa: PLR0913 - the figures of one count, all but tw
     >>> round(interval.low, 4), round(interval.high, 4)
     (0.2553, 0.3662)
     """
+    n = as_count(n, "n")
     _check_count(count, n)
     _check_design(design_effect, degrees_of_freedom)
     fraction = sampling_fraction(n, population_size, replacement=replacement)
@@ -266,7 +272,6 @@ def _as_floats(*numbers: ArrayLike) -> list[NDArray[np.float64]]:
 
 
 def _check_count(count: float, n: int) -> None:
-    check_n(n)
     if not 0 <= count <= n:
         raise InputError(
             "count", count, f"must lie between 0 and n = {n}", "give the answers that chose it"

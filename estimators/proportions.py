@@ -117,20 +117,15 @@ def _most_units(base: AnsweredBase) -> float:
     design = base.design
     if design.population_size is None or design.replacement:
         return math.nan
-    if base.counts.is_census or not base.equal_weights:
+    part_of_census = base.counts.is_census and base.asked < design.n
+    if part_of_census or not base.equal_weights:
         return math.nan
     return float(design.population_size - design.n + base.asked)
 
 
 def _is_simple_sample_of_everyone(base: AnsweredBase) -> bool:
     design = base.design
-    return (
-        base.asked == design.n
-        and len(design.stages.units_drawn) == 1
-        and design.stages.unit is None
-        and design.stages.is_corrected
-        and base.equal_weights
-    )
+    return base.asked == design.n and design.is_simple and design.stages.is_corrected
 
 
 def _standard_error(variance: float, base: AnsweredBase) -> float:

@@ -70,6 +70,12 @@ class SampleDesign:
         return design_degrees_of_freedom(self.stages)
 
     @property
+    def is_simple(self) -> bool:
+        """Whether the rows were drawn one by one from everyone, all with the same chance."""
+        one_by_one = self.stages.unit is None and len(self.stages.units_drawn) == 1
+        return one_by_one and not self.weights_given
+
+    @property
     def has_zero_weights(self) -> bool:
         """Whether some rows speak for nobody."""
         return self.weights_given and not bool(self.weights.all())

@@ -8,13 +8,13 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from estimators.array_checks import as_confidence, as_count
 from estimators.errors import InputError
 from estimators.exact_sums import (
     SumProbabilities,
     sums_with_replacement,
     sums_without_replacement,
 )
-from estimators.interval_checks import check_confidence, check_n
 from estimators.lattices import Lattice, exact_lattice, grid_lattice
 from estimators.listed_sums import listed_means, listing_is_short
 from estimators.results import Interval
@@ -39,7 +39,7 @@ class SamplingDistribution:
         Values the estimate can take, ascending and evenly spaced unless few samples differ. A
         value that no sample reaches has probability 0 (within ``error``).
     probabilities : (m,) float, read-only
-        Probability of each.
+        Probability of each; 0 where it cannot be told from a rounding error.
     mean, standard_deviation, skewness : float
         Of the estimate, in closed form; skewness is NaN where the estimate cannot vary.
     exact : bool
@@ -75,7 +75,7 @@ class SamplingDistribution:
         Interval
             The innermost possible values with at most half of the rest below and above.
         """
-        check_confidence(confidence)
+        confidence = as_confidence(confidence)
         tail = (1 - confidence) / 2 + _CERTAIN
         below = np.searchsorted(np.cumsum(self.probabilities), tail, side="right")
         above = np.searchsorted(np.cumsum(self.probabilities[::-1]), tail, side="right")
@@ -123,9 +123,10 @@ def mean_distribution(
     >>> distribution = mean_distribution(Universe([2, 3, 6, 8, 11], [1, 1, 1, 1, 1]), 2)
     >>> distribution.support.tolist()
     [2.5, 4.0, 4.5, 5.0, 5.5, 6.5, 7.0, 8.5, 9.5]
-    >>> distribution.probabilities[3]
-    0.1
+    >>> distribution.probabilities.round(12).tolist()
+    [0.1, 0.1, 0.1, 0.1, 0.1, 0.1, 0.2, 0.1, 0.1]
     """
+    n = as_count(n, "n")
     _check_draws(universe, n, replacement=replacement)
     support, probabilities, exact, error = _mean_probabilities(
         universe, n, replacement=replacement, most_points=most_points
@@ -266,7 +267,6 @@ def _skewness(universe: Universe, n: int, *, replacement: bool) -> float:
 
 
 def _check_draws(universe: Universe, n: int, *, replacement: bool) -> None:
-    check_n(n)
     if not replacement and universe.endless:
         raise InputError(
             "replacement",

@@ -98,7 +98,9 @@ def test_each_library_stays_at_home(library):
         for name, path in MODULES.items()
         if any(i == library or i.startswith(f"{library}.") for i in imports(path))
     }
-    strangers = {u for u in users if not any(u == h or u.startswith(f"{h}.") for h in HOMES[library])}
+    strangers = {
+        u for u in users if not any(u == h or u.startswith(f"{h}.") for h in HOMES[library])
+    }
     assert users, f"nobody uses {library}: take it out of requirements.txt"
     assert strangers == set()
 

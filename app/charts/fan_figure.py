@@ -11,6 +11,7 @@ from app.charts.fan_panels import (
     CURVE_REACH,
     bar_heights,
     bar_lengths,
+    bar_texts,
     left_texts,
     left_titles,
     longest_left,
@@ -25,6 +26,13 @@ LEFT = (0.0, 0.38)
 RIGHT = (0.56, 1.0)
 FONT = "'Source Sans', 'Source Sans 3', sans-serif"
 LINE_HEIGHT = 17
+_HIDDEN = {
+    "range": [0, 1],
+    "fixedrange": True,
+    "showgrid": False,
+    "zeroline": False,
+    "visible": False,
+}
 _TITLE_WIDTH = 27  # the bundled font is narrow
 Strokes = list[tuple[float, float]]
 
@@ -73,13 +81,6 @@ def _lay_out(
     """Two panels of fixed ranges; every trace lives on heights from 0 to 1."""
     titles = _titles(fan, geometry)
     lines = max(len(title) for title in titles)
-    hidden = {
-        "range": [0, 1],
-        "fixedrange": True,
-        "showgrid": False,
-        "zeroline": False,
-        "visible": False,
-    }
     figure.update_layout(
         height=height,
         margin={
@@ -95,10 +96,10 @@ def _lay_out(
         showlegend=False,
         hovermode=False,
         dragmode=False,
-        xaxis={**hidden, "domain": LEFT},
-        xaxis2={**hidden, "domain": RIGHT, "anchor": "y2"},
-        yaxis=dict(hidden),
-        yaxis2={**hidden, "anchor": "x2"},
+        xaxis={**_HIDDEN, "domain": LEFT},
+        xaxis2={**_HIDDEN, "domain": RIGHT, "anchor": "y2"},
+        yaxis=dict(_HIDDEN),
+        yaxis2={**_HIDDEN, "anchor": "x2"},
     )
     for place, text in left_texts(fan, geometry):
         _write_left(figure, place, text, palette)
@@ -214,7 +215,7 @@ def _draw_bars(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Pale
             y=[(foot + top) / 2 for foot, top in heights],
             width=[top - foot for foot, top in heights],
             marker={"color": palette.people, "line": {"width": 0}},
-            text=[escape(bar.text) for bar in fan.bars],
+            text=[escape(text) for text in bar_texts(fan, geometry)],
             textposition="outside",
             textfont={"size": 12, "color": palette.soft},
             cliponaxis=False,

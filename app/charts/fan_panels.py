@@ -12,6 +12,7 @@ TITLE_WIDTH = 24  # characters above a panel at 390 pixels
 BAR_ROOM = 1.5  # the left panel is this much wider than the longest bar: its number stands there
 NUMBER_ROOM = 0.33  # share of the left panel that a bar's number takes at 390 pixels
 CURVE_REACH = 0.9  # the longest point of the curve, as a share of the right panel
+TEXT_GAP = 0.05  # of the panel's height: 12 pixels of 240
 _NEAR = 0.03  # a stroke this close to a bar would touch its number
 
 
@@ -98,7 +99,41 @@ def left_texts(fan: Fan, geometry: FanGeometry) -> list[tuple[float, str]]:
         if text and geometry.left.holds(value)
     ]
     bars = zip(fan.bars, bar_heights(fan, geometry), strict=True)
-    return ticks + [((foot + top) / 2, bar.label) for bar, (foot, top) in bars if bar.label]
+    labels = [((foot + top) / 2, bar.label) for bar, (foot, top) in bars if bar.label]
+    keep = apart([height for height, _ in labels], [1.0] * len(labels))
+    return ticks + [labels[i] for i in sorted(keep)]
+
+
+def bar_texts(fan: Fan, geometry: FanGeometry) -> list[str]:
+    """Return the number at the end of each bar; "" where a longer neighbour's takes its place.
+
+    Parameters
+    ----------
+    fan : Fan
+        The numbers.
+    geometry : FanGeometry
+        Their places.
+    """
+    middles = [(foot + top) / 2 for foot, top in bar_heights(fan, geometry)]
+    keep = apart(middles, [bar.part for bar in fan.bars])
+    return [bar.text if i in keep else "" for i, bar in enumerate(fan.bars)]
+
+
+def apart(heights: list[float], weights: list[float]) -> set[int]:
+    """Return which texts can be written without touching, the weightier first.
+
+    Parameters
+    ----------
+    heights : list of float
+        Where the texts would stand, 0 to 1.
+    weights : list of float
+        How much each matters; among equals the lower number comes first.
+    """
+    kept: list[int] = []
+    for i in sorted(range(len(heights)), key=lambda i: -weights[i]):
+        if all(abs(heights[i] - heights[j]) >= TEXT_GAP - 1e-9 for j in kept):
+            kept.append(i)
+    return set(kept)
 
 
 def longest_left(fan: Fan) -> int:

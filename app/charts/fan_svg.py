@@ -14,6 +14,7 @@ from app.charts.fan_panels import (
     CURVE_REACH,
     bar_heights,
     bar_lengths,
+    bar_texts,
     left_texts,
     left_titles,
     longest_left,
@@ -175,12 +176,13 @@ def _column(geometry: FanGeometry, frame: FanFrame) -> str:
 def _bars(fan: Fan, geometry: FanGeometry, frame: FanFrame) -> str:
     """Draw answers as level bars with their numbers at the end."""
     drawn = []
-    places = zip(fan.bars, bar_lengths(fan), bar_heights(fan, geometry), strict=True)
-    for bar, length, heights in places:
+    texts = bar_texts(fan, geometry)
+    places = zip(texts, bar_lengths(fan), bar_heights(fan, geometry), strict=True)
+    for text, length, heights in places:
         end = frame.across_left(length)
         y = frame.down(sum(heights) / 2) + 4
         drawn.append(_box((frame.left[0], end), heights, frame, 'class="hr-people"'))
-        drawn.append(_lines([bar.text], end, y, "hr-fan-tick", ' dx="4"'))
+        drawn.append(_lines([text] if text else [], end, y, "hr-fan-tick", ' dx="4"'))
     axis = _inner(frame.left, frame, _path([(0, 0), (0, 1)], "hr-axis"))
     return axis + "".join(drawn)
 

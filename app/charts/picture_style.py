@@ -61,5 +61,9 @@ PICTURE_STYLE = """
 .hr-paper{fill:var(--hr-page)}
 .hr-curve{fill:none;stroke:var(--hr-figure);stroke-width:1.5}
 .hr-axis{fill:none;stroke:var(--hr-hair)}
+.hr-runs{display:block;width:100%}
+.hr-run{fill:none;stroke:var(--hr-figure);stroke-width:1.5}
+.hr-run-open{fill:var(--hr-page);stroke:var(--hr-figure);stroke-width:1}
+.hr-run-line{stroke:var(--hr-ink);stroke-width:1.5}
 .hr-endless{stroke:var(--hr-soft);stroke-width:1;stroke-dasharray:2 3}
 """.replace("CROSS", _CROSS)

@@ -20,6 +20,7 @@ _MARKS = (
 _WORD_WITH_ACCENT = re.compile(r"\w*[^\x00-\x7f]\w*")
 _LONE_BYTE = re.compile("[\udc80-\udcff]")
 _TWICE_ENCODED = (b"\xc3\x83\xc2", b"\xc3\x83\xc5", b"\xc3\x83\xc6", b"\xc3\xa2\xe2\x82\xac")
+_HEAD = 1 << 20
 _PIECE = 4 << 20
 
 
@@ -200,7 +201,7 @@ def _twice_encoded(content: bytes) -> tuple[Remark, ...]:
     """Notice accents that an earlier program broke in two ("Ã©"); they are left as they are."""
     if content.isascii():
         return ()
-    places = sorted(p for p in (content.find(mark) for mark in _TWICE_ENCODED) if p >= 0)
+    places = sorted(p for p in (content.find(mark, 0, _HEAD) for mark in _TWICE_ENCODED) if p >= 0)
     if not places:
         return ()
     line = content[: places[0]].count(b"\n") + 1

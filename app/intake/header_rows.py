@@ -43,7 +43,7 @@ class HeaderRows:
     remarks: tuple[Remark, ...]
 
 
-def find_header(rows: list[Record], reading: Reading, sep_line: bool) -> HeaderRows:
+def find_header(rows: list[Record], reading: Reading) -> HeaderRows:
     """Return the head of a table.
 
     Parameters
@@ -52,8 +52,6 @@ def find_header(rows: list[Record], reading: Reading, sep_line: bool) -> HeaderR
         The first rows of the file, blank ones left out, at least one.
     reading : Reading
         What it says is taken as it is.
-    sep_line : bool
-        Whether line 1 names the delimiter and so is not among the rows.
     """
     width, _ = common_width([len(row.cells) for row in rows])
     start = _first_table_row(rows, width, reading)
@@ -66,16 +64,20 @@ def find_header(rows: list[Record], reading: Reading, sep_line: bool) -> HeaderR
     name_row = min(max(name_row, 1), len(header)) if header else 0
     lines_above = reading.lines_above
     if lines_above is None:
-        lines_above = table[0].line - 1 if start else int(sep_line)
+        lines_above = table[0].line - 1
     remarks = _remarks(rows[:start], header, table)
     return HeaderRows(
         header,
         name_row,
         lines_above,
-        max(width, *(len(row.cells) for row in header)) if header else width,
+        max([width, *(_used(row.cells) for row in header)]),
         _evidence(header, name_row, table),
         remarks,
     )
+
+
+def _used(cells: list[str]) -> int:
+    return max((i for i, cell in enumerate(cells, start=1) if cell.strip()), default=0)
 
 
 def _first_table_row(rows: list[Record], width: int, reading: Reading) -> int:

@@ -23,21 +23,19 @@ request = from_address(data)
 if request is None:
     st.title("Figure")
     layout.problem("No question of this file can be counted: look at the Questions screen.")
-    st.page_link(
-        "screens/questions.py", label="Questions", query_params={"study": opened.study.id}
-    )
+    st.page_link("screens/questions.py", label="Questions", query_params={"study": opened.study.id})
     st.stop()
 
 show_pickers(data, request)
 layout.show_standing(data, request, opened)
 left, right = st.columns([8, 4], gap="large")
+figure = None
 try:
     figure = compute_figure(data, request)
     text = describe(data, figure)
 except FigureError as error:
     with left:
         layout.problem(str(error))
-    figure = None
 if figure is not None:
     with left:
         figure_view.show_number(data, figure, text)

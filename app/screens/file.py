@@ -9,6 +9,7 @@ from app.widgets import address, file_reading, layout
 from app.widgets.cached_work import database, read_file
 from app.widgets.deliveries import deliver
 from app.widgets.first_figure import show_first_figure
+from app.widgets.plain_text import as_html
 
 
 def show_drop(study_id: str, label: str) -> None:
@@ -51,7 +52,7 @@ file = opened.file
 read = read_file(file)
 st.html(
     f'<p class="hr-sentence"><b>{write_count(file.rows)}</b> answers in '
-    f"<b>{write_count(file.columns)}</b> columns, from {layout.as_html(file.file_name)}</p>"
+    f"<b>{write_count(file.columns)}</b> columns, from {as_html(file.file_name)}</p>"
     f'<p class="hr-soft hr-small">received {file.received_at:%d %B %Y, %H:%M} UTC \u00b7 '
     f"SHA-256 {file.fingerprint[:16]}\u2026</p>"
 )
@@ -59,7 +60,7 @@ show_first_figure(opened)
 left, right = st.columns(2, gap="large")
 with left:
     st.subheader("How it was read")
-    file_reading.show_decisions(read)
+    file_reading.show_decisions(file)
     with st.expander("Read it another way"):
         file_reading.show_another_reading(database(), file, read)
 with right:

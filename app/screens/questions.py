@@ -40,7 +40,9 @@ with right, st.container(key="question_card"):
         query = {"study": opened.study.id}
         if chosen and any(q.key == chosen and q.usable for q in questions):
             st.page_link(
-                "screens/figure.py", label="Figure of this question", query_params={**query, "q": chosen}
+                "screens/figure.py",
+                label="Figure of this question",
+                query_params={**query, "q": chosen},
             )
         st.page_link("screens/plan.py", label="On to the sampling plan", query_params=query)
 with left:

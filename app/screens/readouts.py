@@ -4,8 +4,8 @@ from dataclasses import replace
 
 import streamlit as st
 
-from app.study.publishing import obstacles_of
 from app.store import StoreError
+from app.study.publishing import obstacles_of
 from app.widgets import layout
 from app.widgets.cached_work import database
 from app.widgets.publishing import show_new_link, show_publish, show_published
@@ -47,7 +47,11 @@ with right:
     st.subheader("Publish")
     st.session_state["mark"] = opened.study.decimal_mark
     st.selectbox(
-        "Numbers are written", list(MARKS), key="mark", format_func=MARKS.get, on_change=keep_mark
+        "Numbers are written",
+        list(MARKS),
+        key="mark",
+        format_func=MARKS.__getitem__,
+        on_change=keep_mark,
     )
     if obstacles:
         layout.say("Publishing waits for this:")

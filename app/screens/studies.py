@@ -63,7 +63,8 @@ for summary in summaries:
                 else "no fieldwork file yet"
             )
             kept = f"{summary.kept} kept, {summary.live_links} open links"
-            layout.say(f"{words} \u00b7 {kept} \u00b7 changed {study.changed_at:%d %B %Y, %H:%M} UTC")
+            changed = f"changed {study.changed_at:%d %B %Y, %H:%M} UTC"
+            layout.say(f"{words} \u00b7 {kept} \u00b7 {changed}")
         with right, st.container(horizontal=True, horizontal_alignment="right"):
             if st.session_state.get("asked_to_delete") == study.id:
                 layout.say("Delete it with its file, figures and links?", "hr-problem")
@@ -77,9 +78,7 @@ for summary in summaries:
                     args=("asked_to_delete",),
                 )
             else:
-                st.button(
-                    "Duplicate", key=f"copy_{study.id}", on_click=copy_study, args=(summary,)
-                )
+                st.button("Duplicate", key=f"copy_{study.id}", on_click=copy_study, args=(summary,))
                 st.button(
                     "Delete",
                     key=f"delete_{study.id}",

@@ -114,7 +114,7 @@ def _section(data: StudyData, item: KeptFigure, figure: Figure) -> FrozenFigure:
         sentence=_held_sentence(figure) if held else text.sentence,
         comment=item.comment.strip(),
         question=figure.question.text,
-        column_head=_column_head(data, figure, rows),
+        column_head=_column_head(figure, rows),
         axis_low_text=_axis_text(data, figure, low=True),
         axis_high_text=_axis_text(data, figure, low=False),
         rows=tuple(_frozen_row(row) for row in rows),
@@ -142,7 +142,7 @@ def _rows(data: StudyData, figure: Figure) -> tuple[FigureRow, ...]:
     return figure_rows(data, group_requests(split, figure.request))
 
 
-def _column_head(data: StudyData, figure: Figure, rows: tuple[FigureRow, ...]) -> str:
+def _column_head(figure: Figure, rows: tuple[FigureRow, ...]) -> str:
     if figure.scale.share:
         return "%"
     unit = next((row.words.unit for row in rows if row.words is not None), "")

@@ -98,7 +98,8 @@ def _answered(data: StudyData) -> str:
     mark = _mark(data)
     text = f"{write_count(len(data.answers), mark)} {data.plan.unit_many} answered"
     if data.set_aside:
-        text += f"; {write_count(data.set_aside, mark)} rows in which nothing was answered are set aside"
+        rows = write_count(data.set_aside, mark)
+        text += f"; {rows} rows in which nothing was answered are set aside"
     return text + ". Don\u2019t know and refused are left out of a figure unless it says otherwise."
 
 

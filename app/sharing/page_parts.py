@@ -9,8 +9,9 @@ from html import escape
 from app.charts.fan_svg import fan_svg
 from app.charts.rail_geometry import HELD_BACK, HIDDEN
 from app.charts.rail_svg import rail_svg
+from app.charts.repeated_surveys import made_up_runs, runs_sentence, runs_svg
 from app.study.frozen import FrozenFigure, FrozenRow
-from app.study.pictures import Rail
+from app.study.pictures import Fan, Rail
 
 _LEGEND = Rail(
     axis_low=0.0,
@@ -120,7 +121,7 @@ def how_sure(figure: FrozenFigure) -> str:
     caption = f"<figcaption>{notes}</figcaption>" if notes else ""
     return (
         "<details><summary>How sure are we?</summary>"
-        f'<figure class="fan">{fan_svg(fan)}{caption}</figure></details>'
+        f'<figure class="fan">{fan_svg(fan)}{caption}</figure>{_runs(fan)}</details>'
     )
 
 
@@ -140,6 +141,15 @@ def as_asked(question: str) -> str:
     )
 
 
+def _runs(fan: Fan) -> str:
+    """Draw a hundred made-up runs of the plan where that is honest."""
+    runs = made_up_runs(fan)
+    if not runs:
+        return ""
+    caption = element("figcaption", runs_sentence(runs, fan.value_text))
+    return f'<figure class="fan runs">{runs_svg(runs, fan.value)}{caption}</figure>'
+
+
 def _has_value(row: FrozenRow) -> bool:
     return row.verdict not in ("hold back", "hidden") and bool(row.value)
 
@@ -151,10 +161,12 @@ def _heads(figure: FrozenFigure) -> str:
         f'<th class="{name}" role="columnheader" scope="col">{escape(text)}</th>'
         for name, text in (*plain, ("answers", "answers"))
     )
-    ends = f"{element('span', figure.axis_low_text)}{element('span', figure.axis_high_text)}"
+    ends = "".join(
+        f"<span>{escape(text)}</span>" for text in (figure.axis_low_text, figure.axis_high_text)
+    )
     return (
-        f'{heads}<th class="rail" role="columnheader" scope="col"><div class="ends">{ends}</div>'
-        "</th>"
+        f'{heads}<th class="rail" role="columnheader" scope="col">'
+        f'<span class="unseen">as a picture</span><div class="ends">{ends}</div></th>'
     )
 
 

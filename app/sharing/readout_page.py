@@ -66,7 +66,8 @@ def _document(title: str, body: str, style_href: str | None) -> str:
         '<meta name="robots" content="noindex, nofollow">\n'
         '<meta name="referrer" content="no-referrer">\n'
         '<meta name="color-scheme" content="light dark">\n'
-        f'<title>{escape(title)}</title>\n<link rel="icon" href="data:,">\n{style}\n</head>\n<body>\n{body}\n</body>\n</html>\n"
+        f'<title>{escape(title)}</title>\n<link rel="icon" href="data:,">\n{style}\n'
+        f"</head>\n<body>\n{body}\n</body>\n</html>\n"
     )
 
 

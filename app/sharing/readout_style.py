@@ -24,6 +24,7 @@ a{color:var(--hr-link);text-decoration:underline;text-underline-offset:.15em}
 :target{scroll-margin-top:16px}
 .skip{position:absolute;left:16px;top:-100px;background:var(--hr-page);padding:12px 16px;z-index:1}
 .skip:focus{top:8px}
+.unseen{position:absolute;width:1px;height:1px;overflow:hidden;clip-path:inset(50%)}
 .frame{max-width:60rem;margin:0 auto;padding:40px 24px 64px}
 .head{padding-bottom:24px;border-bottom:1px solid var(--hr-hair)}
 .head p{color:var(--hr-soft)}
@@ -134,7 +135,7 @@ _PRINT = """
 @media print{
  html{color-scheme:light;background:#fff}
  body{font-size:10.5pt}
- .skip,.contents{display:none}
+ .skip,.contents,.runs{display:none}
  .frame{display:block;max-width:none;padding:0}
  h1{font-size:22pt}
  h2{font-size:14pt;break-after:avoid}

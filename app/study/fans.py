@@ -20,6 +20,7 @@ from estimators import mean_distribution, plug_in_universe
 FloatArray = npt.NDArray[np.float64]
 CURVE_POINTS = 240
 MOST_BARS = 12
+_T_NOTE = "The curve is the t distribution with the standard error of this sampling plan."
 REACH = 4.5  # standard errors drawn on each side
 
 
@@ -109,19 +110,13 @@ def _notes(figure: Figure, step: float, curve_note: str) -> tuple[str, ...]:
 
 
 def _curve(data: StudyData, figure: Figure) -> tuple[tuple[CurvePoint, ...], bool, str]:
-    """Return the sampling distribution, whether it is drawn as steps, and the line that names it."""
+    """Return the sampling distribution, whether drawn as steps, and the line that names it."""
     error = figure.estimate.standard_error
     if not math.isfinite(error) or error <= 0:
         return (), False, "The answers do not vary, so there is no curve to draw."
     if _is_simple(data) and figure.request.statistic is not Statistic.MEDIAN:
         return _exact_curve(data, figure)
-    return (
-        _t_curve(figure),
-        False,
-        (
-            "The curve is the t distribution of the estimate with its standard error under this plan."
-        ),
-    )
+    return _t_curve(figure), False, _T_NOTE
 
 
 def _is_simple(data: StudyData) -> bool:

@@ -15,6 +15,7 @@ NO_BREAK = "\u00a0"
 FAR = 1.5  # a code this many times the largest other value is far outside
 SPIKE = 5  # a code inside the range has to be this much more frequent than any other value
 _MOST_WORDS = 500  # more different words are open text, where "no answer" may be an answer
+_HUGE = 1e15  # nobody reads longer numbers digit by digit
 _MANY = 30  # distinct values from which a number counts as measured
 
 _NINES = frozenset(10**k - 1 for k in range(1, 8))
@@ -44,23 +45,24 @@ def number_codes(profile: ColumnProfile, question_text: str = "") -> dict[str, M
     question_text : str
         May say what a code means: "99 = don't know".
     """
-    numbers = profile.numbers
-    said = _codes_in_text(profile, question_text)
-    if profile.distinct < 2 or _is_symmetric_scale(numbers):
-        return said
-    low, high = told_ends(question_text) or (0, -1)
-    found = {
-        i
-        for i in (*_below(numbers), *_above(profile), *_spikes(profile))
-        if not low <= numbers[i] <= high
-    }
-    measured = profile.distinct > _MANY
-    guessed = {
-        profile.texts[i]: _usual_reason(int(numbers[i]), numbers[sorted(found)], measured)
-        for i in sorted(found)
-    }
-    codes = guessed | said
+    codes = _guessed_codes(profile, question_text) | _codes_in_text(profile, question_text)
     return codes if len(codes) < profile.distinct else {}
+
+
+def _guessed_codes(profile: ColumnProfile, question_text: str) -> dict[str, MissingReason]:
+    numbers = profile.numbers
+    if profile.distinct < 2 or _is_symmetric_scale(numbers):
+        return {}
+    low, high = told_ends(question_text) or (0, -1)
+    found = sorted(
+        i
+        for i in {*_below(numbers), *_above(profile), *_spikes(profile)}
+        if not low <= numbers[i] <= high
+    )
+    measured = profile.distinct > _MANY
+    return {
+        profile.texts[i]: _usual_reason(int(numbers[i]), numbers[found], measured) for i in found
+    }
 
 
 def _codes_in_text(profile: ColumnProfile, text: str) -> dict[str, MissingReason]:
@@ -108,7 +110,7 @@ def _is_outside(profile: ColumnProfile, codes: list[int]) -> bool:
         return False
     if (rest == np.round(rest)).all() and top <= 10:
         return bool(code - top > 1 and (code >= 9 or code >= top + 3 or len(codes) > 1))
-    if code >= FAR * top:
+    if code / FAR >= top:
         return bool(code >= 97 or top <= 5)
     usual = profile.counts[max(0, lowest - 10) : lowest].max()
     return bool(code in _NINES and code - top > 0.1 * top and profile.counts[lowest] >= 3 * usual)
@@ -178,7 +180,7 @@ def _number_evidence(code: str, profile: ColumnProfile, rest: ColumnProfile, mar
     if rest.numbers[0] <= number <= rest.numbers[-1]:
         second = write_count(int(rest.counts.max()), mark)
         return f"{written} is far more frequent than any other number ({second} at most); {count}"
-    far = "far " if number > FAR * rest.numbers[-1] or number < -9 else ""
+    far = "far " if number / FAR > rest.numbers[-1] or number < -9 else ""
     return f"{written} is {far}outside {low} to {high}; {count}"
 
 
@@ -199,6 +201,8 @@ def _number_consequence(
 
 def write_value(value: float, decimal_mark: str = ".") -> str:
     """Write a number found in the file: whole, or with two decimals from 1 on."""
+    if abs(value) >= _HUGE:
+        return f"{value:.2e}"
     if value != int(value) and abs(value) < 1:
         return write_plain(value, decimal_mark)
     return write_number(value, 1.0 if value == int(value) else 0.01, decimal_mark)
@@ -207,7 +211,8 @@ def write_value(value: float, decimal_mark: str = ".") -> str:
 def _average(profile: ColumnProfile) -> float:
     if not profile.filled:
         return float("nan")
-    return float(profile.numbers @ profile.counts / profile.counts.sum())
+    with np.errstate(over="ignore"):
+        return float(profile.numbers @ profile.counts / profile.counts.sum())
 
 
 def word_proposals(

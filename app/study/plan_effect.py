@@ -70,14 +70,15 @@ def _every_second(plan: SamplingPlan, answers: pd.DataFrame) -> np.ndarray:
     """Return (n,) bool, true for every second row of each stratum."""
     chosen = np.zeros(len(answers), dtype=bool)
     if plan.strata_column in answers:
-        order = np.argsort(label_texts(answers[plan.strata_column]).to_numpy(dtype=str), kind="stable")
+        labels = label_texts(answers[plan.strata_column]).to_numpy(dtype=str)
+        order = np.argsort(labels, kind="stable")
     else:
         order = np.arange(len(answers))
     chosen[order[::2]] = True
     return chosen
 
 
-_NUMBERS = "one two three four five six seven eight nine ten eleven twelve".split()
+_NUMBERS = ("one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten")
 
 
 def _one_in(number: int) -> str:

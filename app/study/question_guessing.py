@@ -165,6 +165,8 @@ def _is_coded_choice(clean: ColumnProfile, text: str) -> bool:
     whole = bool((numbers == np.round(numbers)).all())
     if not whole or asks_for_number(text) or clean.distinct > _FEW:
         return False
+    if set(clean.texts) <= set(told_meanings(text)):
+        return True
     narrow = numbers[-1] - numbers[0] < 2 * _FEW
     return clean.distinct <= 2 or bool(narrow and clean.filled >= 3 * clean.distinct)
 

@@ -17,7 +17,7 @@ from app.study.questions import Answer, MissingReason, Proposal, Question, Quest
 _NAME_STEM = re.compile(r"(.+?[_.\-:# ]|.*\d[rRmMoO])(\d{1,4}|[A-Za-z])|(.*\d)([a-z])")
 _DASH = re.compile(r"\s+[-–—|]\s+")
 _MARK = re.compile(r":\s+|(?<=\?)\s+")
-_BRACKET_SPLIT = re.compile(r"^(.*\S)\s*[\[(]([^\])]+)[\])]$", re.DOTALL)
+_BRACKET = re.compile(r"\s*[\[(](?=[^\[(]+[\])]$)")
 _CELL_CODES = {
     "9": MissingReason.NO_ANSWER,
     "99": MissingReason.DONT_KNOW,
@@ -75,12 +75,14 @@ def column_stem(column: str, texts: dict[str, str]) -> str:
 
 def split_text(text: str) -> tuple[str, str]:
     """Return the question and the option of a text such as "Which brands? - Lindenroot"."""
-    for mark in (_DASH, _MARK):
+    for mark in (_DASH, _BRACKET, _MARK):
         places = list(mark.finditer(text))
         if places and places[-1].start() > 0 and text[places[-1].end() :].strip():
-            return text[: places[-1].start()].strip(), text[places[-1].end() :].strip()
-    bracketed = _BRACKET_SPLIT.match(text)
-    return (bracketed.group(1), bracketed.group(2).strip()) if bracketed else ("", text)
+            option = text[places[-1].end() :].strip()
+            return text[: places[-1].start()].strip(), option.rstrip(
+                "])"
+            ) if mark is _BRACKET else option
+    return "", text
 
 
 def _fits(profile: ColumnProfile) -> bool:

@@ -26,6 +26,7 @@ _DATE = re.compile(
     r"\d{1,2}[./-]\d{1,2}[./-](\d{4}|\d{2})([ ,T]+\d{1,2}:\d{2}.*)?|\d{1,2}:\d{2}(:\d{2})?|"
     r"\d{1,2}\.? [A-Za-zä]{3,9}\.? \d{4}"
 )
+_LARGEST_WEIGHT = 1e9
 _TRIED = 200  # values looked at for a pattern
 
 
@@ -125,7 +126,11 @@ def _weight(profile: ColumnProfile, text: str) -> Question | None:
     numbers, counts = profile.numbers, profile.counts
     if not profile.all_numbers or profile.distinct < 2 or profile.filled < profile.rows:
         return None
-    if numbers[0] <= 0 or bool((numbers == np.round(numbers)).all()):
+    if (
+        numbers[0] <= 0
+        or numbers[-1] > _LARGEST_WEIGHT
+        or bool((numbers == np.round(numbers)).all())
+    ):
         return None
     total = float(numbers @ counts)
     mean = total / profile.filled

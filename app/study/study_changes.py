@@ -40,7 +40,8 @@ class CarriedQuestions:
     questions : tuple of Question
         In the order of the new file; what a person settled is kept.
     kept, gone, new : tuple of str
-        Keys of questions found again, missing from the new file, and seen for the first time.
+        Keys of questions found again, missing from the new file, and holding answers for the
+        first time.
     changed : tuple of ChangedAnswers
         Kept questions that are not quite the same.
     renamed : tuple of (str, str)
@@ -81,6 +82,8 @@ def carry_over(old: tuple[Question, ...], new_guess: tuple[Question, ...]) -> Ca
     new_guess : tuple of Question
         Guessed from the second file.
     """
+    filled = {column for guess in new_guess if not guess.set_aside for column in guess.columns}
+    old = tuple(question for question in old if not _is_revived(question, filled))
     by_column = {column: question for question in old for column in question.columns}
     questions: dict[str, Question] = {}
     changes: list[ChangedAnswers] = []
@@ -88,8 +91,9 @@ def carry_over(old: tuple[Question, ...], new_guess: tuple[Question, ...]) -> Ca
     for guess in new_guess:
         found = {by_column[c].key: by_column[c] for c in guess.columns if c in by_column}
         for key, before in found.items():
+            own = set(guess.columns) - (set(by_column) - set(before.columns))
             questions[key], change = _carried(
-                questions.get(key, before), guess, first=key not in questions
+                questions.get(key, before), _restricted(guess, own), first=key not in questions
             )
             changes += [change] if change else []
         fresh = _unknown_part(guess, list(found.values()), set(by_column))
@@ -137,9 +141,6 @@ def _carried(
     before: Question, guess: Question, *, first: bool
 ) -> tuple[Question, ChangedAnswers | None]:
     """Return the old question with what the new file adds to it."""
-    if _was_empty(before) and not guess.set_aside:
-        sentence = f"{before.key} was set aside, now it holds answers: read as {guess.kind.value}."
-        return replace(guess, key=before.key), ChangedAnswers(before.key, guess.answers, sentence)
     before = _with_columns(before, guess)
     known = {answer.code for answer in before.answers} | {code.code for code in before.missing}
     seen = {proposal.code for proposal in before.proposals} | known
@@ -162,9 +163,10 @@ def _same_codes(before: Question, guess: Question) -> bool:
     return all(several) or all(q.kind in _CODED for q in (before, guess))
 
 
-def _was_empty(question: Question) -> bool:
-    """Whether the file, and not a person, had the question set aside."""
-    return question.set_aside and question.evidence.startswith(SET_ASIDE)
+def _is_revived(question: Question, filled: set[str]) -> bool:
+    """Whether the file had the question set aside, not a person, and now it holds answers."""
+    by_file = question.set_aside and question.evidence.startswith(SET_ASIDE)
+    return by_file and not filled.isdisjoint(question.columns)
 
 
 def _with_columns(before: Question, guess: Question) -> Question:

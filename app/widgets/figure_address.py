@@ -16,8 +16,9 @@ SHARE_METHODS = ("wilson", "clopper_pearson", "korn_graubard", "wald")
 
 def first_question(data: StudyData) -> Question | None:
     """Return the question a study opens with: one that needs nobody, a scale or one answer."""
-    usable = [q for q in data.questions if q.usable and not q.needs_you]
-    order = (QuestionKind.SCALE, QuestionKind.CHOICE, QuestionKind.SEVERAL, QuestionKind.NUMBER)
+    drawn_by = data.plan.strata_column
+    usable = [q for q in data.questions if q.usable and not q.needs_you and q.key != drawn_by]
+    order = (QuestionKind.SCALE, QuestionKind.SEVERAL, QuestionKind.CHOICE, QuestionKind.NUMBER)
     for kind in order:
         for question in usable:
             if question.kind is kind:

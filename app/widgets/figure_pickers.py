@@ -123,4 +123,4 @@ def _pick_group(data: StudyData, request: FigureRequest) -> None:
         group, answer = options[st.session_state[key]]
         address.write(g=group, ga=answer)
 
-    st.selectbox("Who", list(options), key=key, format_func=names.get, on_change=changed)
+    st.selectbox("Who", list(options), key=key, format_func=names.__getitem__, on_change=changed)

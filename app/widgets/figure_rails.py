@@ -24,7 +24,9 @@ from app.widgets.plain_text import as_html, as_typed, shortened
 ANSWERS = "answers"
 
 
-def show_rails(data: StudyData, request: FigureRequest, question: Question) -> tuple[FigureRow, ...]:
+def show_rails(
+    data: StudyData, request: FigureRequest, question: Question
+) -> tuple[FigureRow, ...]:
     """Show the rows beside a figure and return them."""
     split = _pick_rows(data, request, question)
     if split == ANSWERS:
@@ -94,4 +96,3 @@ def _row_html(row: FigureRow) -> str:
         f'<span class="hw-between">{as_html(row.between)} \u00b7 {as_html(row.answers)} answers'
         "</span></div>"
     )
-

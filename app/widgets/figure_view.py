@@ -96,7 +96,8 @@ def show_rows_table(rows: tuple[FigureRow, ...], decimal_mark: str) -> None:
 
 def _table_row(row: FigureRow, decimal_mark: str) -> str:
     if row.figure is None:
-        return f'<tr><th scope="row">{as_html(row.label)}</th><td colspan="5">{as_html(row.reason)}</td></tr>'
+        reason = f'<td colspan="5">{as_html(row.reason)}</td>'
+        return f'<tr><th scope="row">{as_html(row.label)}</th>{reason}</tr>'
     like = row.figure.estimate.equivalent_base
     cells = (
         row.value,
@@ -124,7 +125,11 @@ def show_method(data: StudyData, figure: Figure) -> None:
     with method:
         if figure.scale.share:
             address.select(
-                "Interval of a share", "method", SHARE_METHODS, "wilson", words=_METHOD_WORDS.get
+                "Interval of a share",
+                "method",
+                SHARE_METHODS,
+                "wilson",
+                words=_METHOD_WORDS.__getitem__,
             )
     st.session_state["address_endless"] = address.read("endless") == "1"
     st.checkbox(

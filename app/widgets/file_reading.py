@@ -1,4 +1,4 @@
-"""How a fieldwork file was read: what was decided, first rows, remarks, and another way to read it."""
+"""How a fieldwork file was read: decisions, first rows, remarks, and another way to read it."""
 
 from __future__ import annotations
 
@@ -29,9 +29,10 @@ _ENCODINGS = {
 }
 
 
-def show_decisions(read: FieldworkFile) -> None:
-    """Show how the file was read, one sentence a decision."""
-    items = "".join(f"<li>{as_html(sentence)}</li>" for sentence in read.reading.evidence)
+def show_decisions(file: StudyFile) -> None:
+    """Show how the file was read when it arrived, one sentence a decision."""
+    evidence = Reading.from_json(file.reading).evidence
+    items = "".join(f"<li>{as_html(sentence)}</li>" for sentence in evidence)
     st.html(f'<ul class="hw-list">{items}</ul>')
 
 
@@ -68,7 +69,7 @@ def show_another_reading(database: Database, file: StudyFile, read: FieldworkFil
         with second:
             mark = _pick("Numbers are written with a", _MARKS, reading.decimal_mark)
             heads = st.number_input(
-                "Rows of column heads", 0, 3, reading.header_rows, key="reading_heads"
+                "Rows of column heads", 0, 3, reading.header_rows or 1, key="reading_heads"
             )
         if not st.form_submit_button("Read it this way"):
             return
@@ -77,12 +78,13 @@ def show_another_reading(database: Database, file: StudyFile, read: FieldworkFil
         encoding=encoding,
         delimiter=delimiter,
         decimal_mark=mark,
-        header_rows=int(heads),
+        header_rows=int(heads or 0),
     )
     _read_this_way(database, file, wanted)
 
 
-def _pick(label: str, words: dict[str, str], now: str) -> str:
+def _pick(label: str, words: dict[str, str], found: str | None) -> str:
+    now = found or next(iter(words))
     options = list(words) if now in words else [now, *words]
     return str(
         st.selectbox(

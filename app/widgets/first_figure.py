@@ -38,9 +38,10 @@ def show_first_figure(opened: OpenStudy) -> None:
     )
     with st.container(border=True, key="first_figure"):
         row = single_row(data, figure)
+        value = value_words(figure, text.words, data.study.decimal_mark)
         st.html(
             f'<p class="hr-soft hw-question">First figure: {as_html(question.text)}</p>'
-            f'<p class="hr-number">{as_html(value_words(figure, text.words, data.study.decimal_mark))} '
+            f'<p class="hr-number">{as_html(value)} '
             f"<small>{as_html(text.title)}</small></p>"
             f'<p class="hr-sentence">{as_html(text.sentence)}</p>{rail_html(row.rail)}'
             f'<p class="hr-soft hw-tight">{as_html(standing)}</p>'

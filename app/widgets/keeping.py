@@ -6,13 +6,13 @@ from dataclasses import replace
 
 import streamlit as st
 
-from app.store import Database
+from app.store import Database, StoreError
 from app.study.figure_requests import FigureRequest
 from app.study.figure_rows import groupings
 from app.study.sentences import FigureText
 from app.study.study import KeptFigure, Study
 from app.study.study_data import StudyData
-from app.widgets import address
+from app.widgets import address, layout
 from app.widgets.figure_rails import ANSWERS, default_split
 
 
@@ -28,13 +28,20 @@ def show_keep(
             type="primary",
             key="keep",
             width="stretch",
-            on_click=database.keep_figure,
-            args=(study.id, wanted),
+            on_click=_keep,
+            args=(database, study.id, wanted),
         )
     else:
         _show_kept(database, study, kept)
     with st.popover("Copy the sentence", width="stretch"):
         st.code(text.sentence, language=None, wrap_lines=True)
+
+
+def _keep(database: Database, study_id: str, request: FigureRequest) -> None:
+    try:
+        database.keep_figure(study_id, request)
+    except StoreError as error:
+        layout.later(error.sentence)
 
 
 def _show_kept(database: Database, study: Study, kept: KeptFigure) -> None:

@@ -92,7 +92,8 @@ def journey(current: str, opened: OpenStudy) -> None:
     )
     with st.container(horizontal=True, key="journey", gap="small", vertical_alignment="center"):
         st.page_link(f"{SCREENS}/studies.py", label="Studies")
-        st.html(f'<span class="hw-study">{as_html(shortened(opened.study.name, 32))}</span>', width="content")
+        name_shown = as_html(shortened(opened.study.name, 32))
+        st.html(f'<span class="hw-study">{name_shown}</span>', width="content")
         for name, label, mark in steps:
             text = f"**{label}**{mark}" if name == current else f"{label}{mark}"
             st.page_link(f"{SCREENS}/{name}.py", label=text, query_params=query)
@@ -106,7 +107,7 @@ def file_first(opened: OpenStudy) -> StudyFile:
     st.page_link(
         f"{SCREENS}/file.py", label="Drop a fieldwork file", query_params={"study": opened.study.id}
     )
-    st.stop()
+    return st.stop()
 
 
 def problem(sentence: str) -> None:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import streamlit as st
 
-from app.study.number_format import NO_BREAK, step_for, write_count, write_number
+from app.study.number_format import NO_BREAK, write_count, write_number
 from app.study.plan_checks import PlanProblem
 from app.study.plan_effect import PlanEffect
 from app.study.sampling_plan import SamplingMethod
@@ -25,9 +25,8 @@ _ANCHORS = {
 def show_effect(data: StudyData, effect: PlanEffect) -> None:
     """Show what a share of one half would carry, and how much of the universe answered."""
     mark = data.study.decimal_mark
-    step = min(1.0, max(0.1, step_for(min(effect.points, effect.endless_points), share=True)))
-    here = write_number(effect.points, step, mark)
-    endless = write_number(effect.endless_points, step, mark)
+    here = write_number(effect.points, 0.1, mark)
+    endless = write_number(effect.endless_points, 0.1, mark)
     least = "at least " if data.plan.method is SamplingMethod.GROUPS else ""
     st.html(
         '<div class="hw-strip"><p class="hr-sentence">A share of 50'
@@ -44,7 +43,8 @@ def _asked(effect: PlanEffect, mark: str) -> str:
     return (
         f'<p class="hr-soft">{answered} of {write_count(effect.universe, mark)} answered: '
         f"{as_html(effect.fraction_words)}</p>"
-        f'<span class="hw-part" aria-hidden="true"><span style="width:{100 * part:.1f}%"></span></span>'
+        f'<span class="hw-part" aria-hidden="true"><span style="width:{100 * part:.1f}%"></span>'
+        "</span>"
     )
 
 

@@ -55,8 +55,6 @@ def show_universe(keeper: PlanKeeper) -> None:
 def _show_size(keeper: PlanKeeper) -> None:
     plan = keeper.plan
     by_strata = universe_from_strata(plan)
-    if by_strata is not None:
-        layout.say(f"How many: {write_count(by_strata)}, the sum of the strata below")
     known = known_universe(plan)
     fill("plan_size", write_count(plan.universe_size) if plan.universe_size else "")
     st.text_input(
@@ -68,6 +66,8 @@ def _show_size(keeper: PlanKeeper) -> None:
         max_chars=20,
     )
     show_refusal("plan_size")
+    if by_strata is not None and by_strata != plan.universe_size:
+        layout.say(f"The strata add up to {write_count(by_strata)}; that counts.")
     if known is None:
         layout.say("Not known: the universe counts as endless, and totals are not possible.")
 
@@ -119,9 +119,7 @@ def show_method(keeper: PlanKeeper) -> None:
         )
 
 
-def show_groups(
-    keeper: PlanKeeper, questions: tuple[Question, ...], answers: pd.DataFrame
-) -> None:
+def show_groups(keeper: PlanKeeper, questions: tuple[Question, ...], answers: pd.DataFrame) -> None:
     """Ask which groups were drawn first; only where whole groups were drawn."""
     if keeper.plan.method is not SamplingMethod.GROUPS:
         return
@@ -204,4 +202,3 @@ def _take_column(keeper: PlanKeeper, key: str, field: str) -> None:
     if field == "strata_column":
         changes["strata"] = ()
     keeper.save(**changes)
-

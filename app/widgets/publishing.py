@@ -150,9 +150,7 @@ def _show_actions(database: Database, readout: Readout) -> None:
 def _new_link(database: Database, readout: Readout) -> None:
     token = make_token()
     try:
-        database.replace_link(
-            readout.id, hash_token(token), datetime.now(UTC) + timedelta(days=30)
-        )
+        database.replace_link(readout.id, hash_token(token), datetime.now(UTC) + timedelta(days=30))
     except StoreError as error:
         layout.later(error.sentence)
         return

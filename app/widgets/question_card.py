@@ -30,7 +30,7 @@ def show_question(
     question = stored.question
     st.html(
         f'<h2 class="hw-card-head">{as_html(question.text)}</h2>'
-        f'<p class="hr-soft">{as_html(question.kind.value)} \u2013 {as_html(question.evidence)}</p>'
+        f'<p class="hr-soft">{as_html(_about(question))}</p>'
     )
     if set(question.columns) <= set(answers.columns):
         _show_answers(read_values(question, answers))
@@ -48,8 +48,8 @@ def show_question(
         st.button(
             aside,
             key="set_aside",
-            on_click=_save,
-            args=(database, study_id, stored, replace(question, set_aside=not question.set_aside)),
+            on_click=_set_aside,
+            args=(database, study_id, stored),
         )
         st.button(
             "Undo: read it afresh from the file",
@@ -57,6 +57,19 @@ def show_question(
             on_click=_read_afresh,
             args=(database, study_id, stored, answers),
         )
+
+
+def _about(question: Question) -> str:
+    """Return the kind and why it was read so; the evidence of a guess begins with the kind."""
+    kind, why = question.kind.value, question.evidence
+    if not why:
+        return kind.capitalize()
+    return why[:1].upper() + why[1:] if why.startswith(kind) else f"{kind.capitalize()}; {why}"
+
+
+def _set_aside(database: Database, study_id: str, stored: StoredQuestion) -> None:
+    question = stored.question
+    _save(database, study_id, stored, replace(question, set_aside=not question.set_aside))
 
 
 def _show_choice(
@@ -142,9 +155,7 @@ def _show_answers(values: QuestionValues) -> None:
     )
     counted = (f"{write_count(base)} answered", missing)
     text = as_html(" \u00b7 ".join(part for part in counted if part))
-    st.html(
-        f'{lines}<p class="hr-soft hr-small">{text}</p>'
-    )
+    st.html(f'{lines}<p class="hr-soft hr-small">{text}</p>')
 
 
 def _bars(values: QuestionValues, base: int) -> str:
@@ -158,6 +169,8 @@ def _bars(values: QuestionValues, base: int) -> str:
         for answer, part in shown
     )
     more = len(values.question.answers) - len(shown)
+    short = all(len(answer.label) <= 4 for answer, _ in shown)
+    rows = f'<div class="{"hw-bars-short" if short else "hw-bars"}">{rows}</div>'
     return rows + (f'<p class="hr-soft hr-small">and {more} more answers</p>' if more > 0 else "")
 
 

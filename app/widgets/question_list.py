@@ -75,7 +75,8 @@ def _page_of(questions: tuple[Question, ...], chosen: str) -> int:
 
 
 def _show_row(question: Question, chosen: str) -> None:
-    with st.container(key=f"question_row_{question.columns[0]}", gap=None):
+    key = f"question_row_{question.columns[0]}"
+    with st.container(key=key, horizontal=True, gap="small", vertical_alignment="center"):
         name = f"{as_typed(question.key)} \u2003 {as_typed(shortened(question.text, 70))}"
         mark = "? " if question.needs_you else ""
         st.button(
@@ -85,7 +86,9 @@ def _show_row(question: Question, chosen: str) -> None:
             on_click=address.write,
             kwargs={"q": question.key},
         )
-        st.html(f'<p class="hr-soft hr-small hw-tight">{as_html(_about(question))}</p>')
+        st.html(
+            f'<p class="hr-soft hr-small hw-tight">{as_html(_about(question))}</p>', width="content"
+        )
 
 
 def _about(question: Question) -> str:
@@ -105,8 +108,6 @@ def _show_pages(page: int, pages: int) -> None:
     with st.container(horizontal=True, vertical_alignment="center"):
         if page > 0:
             address.link("Earlier", "page_back", page=str(page - 1))
-        st.html(
-            f'<span class="hr-soft">page {page + 1} of {pages}</span>', width="content"
-        )
+        st.html(f'<span class="hr-soft">page {page + 1} of {pages}</span>', width="content")
         if page + 1 < pages:
             address.link("More", "page_on", page=str(page + 1))

@@ -56,9 +56,10 @@ def _show_figure(data: StudyData, item: KeptFigure) -> None:
         return
     text = describe(data, figure)
     row = single_row(data, figure)
+    value = value_words(figure, text.words, data.study.decimal_mark)
     st.html(
-        f'<p class="hw-tight"><b>{as_html(value_words(figure, text.words, data.study.decimal_mark))}'
-        f"</b> {as_html(text.title)}, {as_html(text.who)}</p>"
+        f'<p class="hw-tight"><b>{as_html(value)}</b> '
+        f"{as_html(text.title)}, {as_html(text.who)}</p>"
         f'<p class="hr-soft hw-tight">{as_html(row.between)} \u00b7 {as_html(text.base_line)}</p>'
         f"{rail_html(row.rail)}"
         f"<p>{verdict_html(figure.verdict.outcome.value)} "

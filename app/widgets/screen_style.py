@@ -2,7 +2,13 @@
 
 SCREEN_STYLE = """
 .st-key-journey{border-bottom:1px solid var(--hr-hair);padding-bottom:4px;row-gap:0}
-.st-key-journey a{padding:4px 8px 4px 0}
+.st-key-journey{margin-left:-8px}
+.st-key-journey a{padding:4px 8px}
+.stApp [data-testid="stPageLink-NavLink"]{background:none}
+.st-key-journey a:has(strong){box-shadow:inset 0 -3px 0 var(--hr-figure);border-radius:0}
+:not(.st-key-journey)>[data-testid="stElementContainer"] [data-testid="stPageLink-NavLink"] p{
+ color:var(--hr-link);text-decoration:underline;text-decoration-thickness:1px;
+ text-underline-offset:3px}
 .hw-study{font-family:"Source Serif","Source Serif 4",Georgia,serif;font-weight:600;
  color:var(--hr-ink);padding:0 8px;border-left:1px solid var(--hr-line)}
 .hw-question{margin:0 0 8px 0;font-size:1rem;max-width:44em}
@@ -11,11 +17,13 @@ SCREEN_STYLE = """
 .hw-kept{margin:0;font-weight:600;color:var(--hr-ink)}
 .hw-standing{margin:0;color:var(--hr-ink);border-left:3px solid var(--hr-figure);padding-left:8px}
 .hw-caption{text-align:left;color:var(--hr-soft);font-size:.875rem;padding:0 0 4px 0}
-.hw-card-head{font-size:1.5rem;margin:0 0 4px 0;padding:0}
+.hw-card-head{font-family:"Source Serif","Source Serif 4",Georgia,serif;font-size:1.5rem;font-weight:600;
+ margin:0 0 4px 0;padding:0}
 .hw-proposal{border-left:3px solid var(--hr-figure);padding:2px 0 2px 12px;margin:8px 0}
 .hw-proposal p{margin:0}
-.hw-bar{display:grid;grid-template-columns:minmax(6em,12em) 1fr 4em;gap:8px;align-items:center;
+.hw-bar{display:grid;grid-template-columns:minmax(6em,12em) 1fr 5em;gap:8px;align-items:center;
  font-size:.9375rem;line-height:1.5}
+.hw-bars-short .hw-bar{grid-template-columns:2.5em 1fr 5em}
 .hw-bar-name{overflow-wrap:anywhere;color:var(--hr-ink)}
 .hw-bar-line span{display:block;height:12px;background:var(--hr-people)}
 .hw-bar-text{text-align:right;font-variant-numeric:tabular-nums;color:var(--hr-ink)}

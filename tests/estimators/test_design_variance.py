@@ -215,7 +215,9 @@ def test_not_answering_is_a_further_random_phase_within_clusters():
     """All members are asked, all but one answer in each cluster of the sample."""
     found = Moments()
     clusters = {c: v for c, v in CLUSTERS.items() if len(v) > 2}
-    for chance, pairs in two_stage_subsets(clusters, 2, {c: len(v) - 1 for c, v in clusters.items()}):
+    for chance, pairs in two_stage_subsets(
+        clusters, 2, {c: len(v) - 1 for c, v in clusters.items()}
+    ):
         drawn = sorted({c for c, _ in pairs})
         everyone = [(c, u) for c in drawn for u in range(len(clusters[c]))]
         answered = np.array([row in pairs for row in everyone])

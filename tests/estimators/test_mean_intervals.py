@@ -8,7 +8,6 @@ import pytest
 from scipy import stats
 
 from estimators.errors import InputError
-from estimators.interval_checks import sampling_fraction
 from estimators.mean_intervals import mean_interval
 
 
@@ -55,9 +54,3 @@ def test_wrong_calls_are_refused_by_name(call, argument):
     with pytest.raises(InputError) as refused:
         mean_interval(*call[:3], **call[3])
     assert refused.value.argument == argument
-
-
-def test_sampling_fraction_is_zero_where_no_correction_applies():
-    assert sampling_fraction(10, None, replacement=False) == 0
-    assert sampling_fraction(10, 4, replacement=True) == 0
-    assert sampling_fraction(10, 40, replacement=False) == 0.25

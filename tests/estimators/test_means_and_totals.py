@@ -41,6 +41,17 @@ def design_of(case) -> SampleDesign:
     return SampleDesign.weighted(told["weights"])
 
 
+def by_likeness(case, design_effect: float) -> float:
+    """1 + (M-1) rho, where the design effect times the variance is the mean square between."""
+    values = values_of(case)
+    size = case["design"]["clusters"].count(0)
+    clusters = len(values) // size
+    between = design_effect * values.var(ddof=1)
+    squares = (len(values) - 1) * values.var(ddof=1) - (clusters - 1) * between
+    within = squares / (clusters * (size - 1))
+    return 1 + (size - 1) * (between - within) / (between + (size - 1) * within)
+
+
 def figures_of(case) -> dict[str, float]:
     """Every figure a printed example may give, by our functions."""
     values, design = values_of(case), design_of(case)
@@ -54,9 +65,11 @@ def figures_of(case) -> dict[str, float]:
             found["known_mean_error"] = whole.standard_error / case["known_size"]
     average = mean(values, design)
     found |= {"mean": average.value, "mean_error": average.standard_error}
-    found |= {"mean_variance": average.standard_error**2, "design_effect": average.design_effect}
+    found["mean_variance"] = average.standard_error**2
     endless = mean(values, design.without_correction())
     found["variance"] = endless.standard_error**2 * len(values)
+    if case["design"]["kind"] == "clustered":
+        found["design_effect_by_likeness"] = by_likeness(case, average.design_effect)
     found["share_positive"] = mean(values > 0, design).value
     for label in set(case["design"].get("strata", [])):
         here = np.array(case["design"]["strata"]) == label

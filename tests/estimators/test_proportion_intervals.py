@@ -22,6 +22,8 @@ from estimators.proportion_intervals import (
     share_interval,
 )
 from estimators.proportion_methods import METHODS
+from estimators.proportions import proportion
+from estimators.sample_designs import SampleDesign
 
 PUBLISHED = Path(__file__).parents[1] / "published_values"
 KORN_GRAUBARD = json.loads((PUBLISHED / "intervals_korn_graubard.json").read_text("utf-8"))
@@ -239,6 +241,28 @@ def test_stand_in_where_no_answer_varies():
     )
     found = share_interval(evidence)
     assert (found.low, found.high) == pytest.approx(expected, rel=1e-12)
+
+
+@pytest.mark.parametrize("method", METHOD_NAMES)
+@pytest.mark.parametrize(
+    ("population_size", "replacement"), [(None, False), (23, False), (40, False), (40, True)]
+)
+def test_rows_and_counts_give_the_same_interval(method, population_size, replacement):
+    if method == "hypergeometric" and (population_size is None or replacement):
+        return  # refused there, see test_hypergeometric_refuses_other_samples
+    facts = {"population_size": population_size, "replacement": replacement}
+    for count in range(24):
+        design = SampleDesign.simple_random(23, **facts)
+        from_rows = proportion(np.arange(23) < count, design, method=method).interval
+        from_count = proportion_interval(count, 23, method=method, **facts)
+        assert (from_rows.low, from_rows.high) == pytest.approx(
+            (from_count.low, from_count.high), rel=1e-12, abs=1e-15
+        )
+
+
+def test_one_unit_unseen_of_ten_million_still_leaves_width():
+    found = proportion_interval(0, 10**7 - 1, population_size=10**7)
+    assert (found.low, found.high) == (0.0, 1e-7)
 
 
 @given(

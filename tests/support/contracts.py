@@ -41,7 +41,9 @@ class Estimator:
 
 MEAN = Estimator("mean", mean, "values")
 TOTAL = Estimator("total", total, "values")
-RATIO = Estimator("ratio", lambda v, d, **kw: ratio(v, 2 + np.arange(d.n) % 3, d, **kw), "numerator")
+RATIO = Estimator(
+    "ratio", lambda v, d, **kw: ratio(v, 2 + np.arange(d.n) % 3, d, **kw), "numerator"
+)
 PROPORTION = Estimator("proportion", proportion, "chosen", scales=False, zero_one=True)
 QUANTILE = Estimator("quantile", lambda v, d, **kw: quantile(v, 0.5, d, **kw), "values")
 

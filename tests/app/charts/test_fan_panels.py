@@ -8,8 +8,10 @@ import pytest
 
 from app.charts.fan_geometry import fan_geometry
 from app.charts.fan_panels import (
+    apart,
     bar_heights,
     bar_lengths,
+    bar_texts,
     left_texts,
     right_titles,
     shortened,
@@ -76,3 +78,16 @@ def test_ticks_and_labels_stand_at_their_heights():
     fan = share_fan()
     places = left_texts(fan, fan_geometry(fan))
     assert [height for height, _ in places] == pytest.approx([0, 0.25, 0.5, 0.75, 1])
+
+
+def test_texts_that_would_touch_give_way_to_the_weightier():
+    assert apart([0.10, 0.12, 0.30], [1.0, 2.0, 1.0]) == {1, 2}
+    assert apart([i / 100 for i in range(101)], [1.0] * 101) == set(range(0, 101, 5))
+    assert apart([], []) == set()
+
+
+def test_eleven_bars_keep_their_labels_and_numbers():
+    fan = mean_fan()
+    geometry = fan_geometry(fan)
+    assert bar_texts(fan, geometry) == [bar.text for bar in fan.bars]
+    assert [text for _, text in left_texts(fan, geometry)] == [bar.label for bar in fan.bars]

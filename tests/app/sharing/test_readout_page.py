@@ -123,10 +123,10 @@ def test_no_script_no_style_attribute_no_foreign_address(href):
 
 
 def test_style_comes_from_the_server_or_travels_inside():
-    assert [link["href"] for link in _page().named("link")] == ["/s.css"]
+    assert [link["href"] for link in _page().named("link")] == ["data:,", "/s.css"]
     inside = render_page(example_readout(), style_href=None)
     assert f"<style>{STYLE_TEXT}</style>" in inside
-    assert not Page(inside).named("link")
+    assert [link["rel"] for link in Page(inside).named("link")] == ["icon"]
 
 
 def test_the_style_sheet_has_the_address_of_its_hash_and_fetches_nothing():

@@ -1,0 +1,2 @@
+"""placeholder"""
+PastedCount = PastedCounts = read_pasted_counts = None
