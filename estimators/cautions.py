@@ -69,7 +69,7 @@ def answers_missing(asked: int, answered: int) -> Caution:
     """Say that some of the people asked gave no answer."""
     return Caution(
         "answers_missing",
-        f"{asked - answered:,} of the {asked:,} people in this group gave no answer: the figure "
+        f"{asked - answered:,} of the {asked:,} people this figure is about gave no answer: it "
         "takes them to be like those who did.",
     )
 

@@ -14,7 +14,7 @@ import numpy as np
 from estimators import cautions as caution
 from estimators.array_checks import Bools, Floats
 from estimators.results import Caution
-from estimators.sampling_stages import SamplingStages
+from estimators.sampling_stages import SamplingStages, counts_by
 
 _ALL = 1 - 1e-12  # a sampling fraction from here on is all there is
 
@@ -144,13 +144,12 @@ def _per_unit(stages: SamplingStages, rows: Bools | None) -> Floats:
         return stages.rows_drawn
     if stages.unit is None:
         return rows.astype(float)
-    return np.bincount(stages.unit[rows], minlength=len(stages.rows_drawn)).astype(float)
+    return counts_by(stages.unit, rows, len(stages.rows_drawn))
 
 
 def _per_stratum(stages: SamplingStages, units: Bools) -> Floats:
     """(H,) units of each stratum that are in the mask."""
-    found = np.bincount(stages.unit_stratum[units], minlength=len(stages.units_drawn))
-    return found.astype(float)
+    return counts_by(stages.unit_stratum, units, len(stages.units_drawn))
 
 
 def _units_per_stratum(stages: SamplingStages, rows_of_unit: Floats) -> Floats:

@@ -16,8 +16,10 @@ from estimators.array_checks import (
     refuse_labels_without_rows,
 )
 from estimators.errors import InputError
+from estimators.sampling_stages import SamplingStages, stages_of_clusters
 
 Counts = Mapping[object, int]
+Strata = tuple[Codes, list[object]]
 
 _RELATIVE = 1e-3  # a mean weight this close to 1 says nothing about the size of the universe
 
@@ -34,9 +36,7 @@ def stratum_codes(strata: ArrayLike | None, n: int) -> tuple[Codes, list[object]
     return as_labels(strata, "strata", n)
 
 
-def stratum_sizes(
-    sizes: Counts, strata: tuple[Codes, list[object]], name: str, *, replacement: bool = False
-) -> Floats:
+def stratum_sizes(sizes: Counts, strata: Strata, name: str, *, replacement: bool = False) -> Floats:
     """Return the universe of each stratum, with rows in each and not more rows than units."""
     if not isinstance(sizes, Mapping):
         raise InputError(
@@ -59,15 +59,13 @@ def refuse_more_than_there(drawn: int, there: int, name: str, what: str) -> None
             name,
             f"{there:,}",
             f"must not be smaller than the {drawn:,} {what} drawn from it",
-            "correct the number, or say that units were drawn with replacement",
+            "correct the number, or the rows of the file",
         )
 
 
-def cluster_codes(clusters: ArrayLike, stratum: Codes | None) -> tuple[Codes, list[object]]:
+def cluster_codes(clusters: ArrayLike, stratum: Codes) -> tuple[Codes, list[object]]:
     """Return (n,) cluster codes and their labels; a cluster in two strata is refused."""
-    codes, labels = as_labels(clusters, "clusters", None if stratum is None else len(stratum))
-    if stratum is None:
-        return codes, labels
+    codes, labels = as_labels(clusters, "clusters", len(stratum))
     home = np.zeros(len(labels), np.intp)
     home[codes] = stratum
     strayed = np.flatnonzero(home[codes] != stratum)
@@ -81,11 +79,9 @@ def cluster_codes(clusters: ArrayLike, stratum: Codes | None) -> tuple[Codes, li
     return codes, labels
 
 
-def clusters_there(
-    counts: int | Counts | None, strata: tuple[Codes, list[object]], cluster: Codes
-) -> Floats:
+def clusters_there(counts: int | Counts | None, strata: Strata, cluster: Codes) -> Floats:
     """Return the clusters each stratum has in the universe; infinite where nothing is said."""
-    codes, labels = strata
+    _, labels = strata
     if counts is None:
         return np.full(len(labels), np.inf)
     if isinstance(counts, Mapping):
@@ -100,9 +96,7 @@ def clusters_there(
         )
     else:
         found = np.array([as_count(counts, "population_clusters")], dtype=float)
-    home = np.zeros(cluster.max() + 1, np.intp)
-    home[cluster] = codes
-    drawn = np.bincount(home, minlength=len(labels))
+    drawn = _clusters_drawn(strata, cluster)
     for label, sampled, there in zip(labels, drawn, found, strict=True):
         name = "population_clusters" + (f"[{label!r}]" if len(labels) > 1 else "")
         refuse_more_than_there(int(sampled), int(there), name, "clusters")
@@ -130,12 +124,54 @@ def cluster_members(
     return rows, members
 
 
-def expansion_of_clusters(there: Floats, stratum: Codes, cluster: Codes) -> Floats:
-    """Return (n,) clusters each drawn cluster speaks for; 1 where their number is unknown."""
+def drawn_clusters(
+    clusters: ArrayLike,
+    strata: ArrayLike | None,
+    population_clusters: int | Counts | None,
+    cluster_sizes: Counts | None,
+) -> tuple[SamplingStages, Floats, int | None]:
+    """Return stages, (n,) weights and, where every cluster was drawn, the size of the universe."""
+    stratum = stratum_codes(strata, np.size(clusters))
+    cluster = cluster_codes(clusters, stratum[0])
+    there = clusters_there(population_clusters, stratum, cluster[0])
+    rows, members = cluster_members(cluster_sizes, cluster)
+    stages = stages_of_clusters(
+        (stratum[0], names_of(stratum[1])), (cluster[0], names_of(cluster[1])), there, members
+    )
+    drawn = _clusters_drawn(stratum, cluster[0])
+    first = np.where(np.isfinite(there), there / drawn, 1.0)[stratum[0]]
+    all_drawn = bool(np.all(drawn == there))
+    return stages, first * (members / rows)[cluster[0]], int(members.sum()) if all_drawn else None
+
+
+def invited(
+    n: int, strata: ArrayLike | None, sizes: Counts | None, population_size: int | None
+) -> tuple[ArrayLike, Counts]:
+    """Return the strata of an attempted census and the people invited in each."""
+    if strata is None or sizes is None:
+        raise InputError(
+            "strata" if strata is None else "population_sizes",
+            None,
+            "must be given together with the other of strata and population_sizes",
+            "give both or neither",
+        )
+    found = stratum_sizes(sizes, stratum_codes(strata, as_count(n, "n")), "population_sizes")
+    if population_size is not None and population_size != found.sum():
+        raise InputError(
+            "population_size",
+            population_size,
+            f"must equal the sum of population_sizes, {int(found.sum()):,}",
+            "correct one of them or leave population_size out",
+        )
+    return strata, sizes
+
+
+def _clusters_drawn(strata: Strata, cluster: Codes) -> Floats:
+    """(H,) clusters drawn in each stratum."""
+    codes, labels = strata
     home = np.zeros(cluster.max() + 1, np.intp)
-    home[cluster] = stratum
-    drawn = np.bincount(home, minlength=len(there))
-    return np.where(np.isfinite(there), there / drawn, 1.0)[stratum]
+    home[cluster] = codes
+    return np.bincount(home, minlength=len(labels)).astype(float)
 
 
 def names_of(labels: list[object]) -> tuple[str, ...]:

@@ -19,6 +19,7 @@ from estimators.design_variance import variance_of_sum
 from estimators.response_variance import variances_of_both_phases
 from estimators.results import Caution
 from estimators.sample_designs import SampleDesign
+from estimators.sampling_stages import counts_by
 
 _SAME = 1e-12
 
@@ -239,19 +240,21 @@ def _weights_of_answers(
 
 def _asked_per_answer(design: SampleDesign, where: Bools | None, inside: Bools) -> Floats:
     """(n,) people asked for each answer, in the group within which response is random."""
-    group = design.stages.response_group
-    asked = np.bincount(group if where is None else group[where], minlength=group.max() + 1)
-    gave = np.bincount(group[inside], minlength=group.max() + 1)
-    return (asked / np.maximum(gave, 1))[group]
+    asked, answered = _asked_and_answered(design, where, inside)
+    return (asked / np.maximum(answered, 1))[design.stages.response_group]
 
 
 def _groups_without_answers(
     design: SampleDesign, where: Bools | None, inside: Bools | None
 ) -> bool:
     """Whether a stratum or cluster has people in the base and no answer from any of them."""
-    if inside is None:
-        return False
-    group = design.stages.response_group
-    asked = np.bincount(group if where is None else group[where], minlength=group.max() + 1)
-    gave = np.bincount(group[inside], minlength=group.max() + 1)
-    return bool(((asked > 0) & (gave == 0)).any())
+    asked, answered = _asked_and_answered(design, where, inside)
+    return bool(((asked > 0) & (answered == 0)).any())
+
+
+def _asked_and_answered(
+    design: SampleDesign, where: Bools | None, inside: Bools | None
+) -> tuple[Floats, Floats]:
+    """(G,) rows of each response group that the figure is about, and those that answered."""
+    group, size = design.stages.response_group, design.stages.response_groups
+    return counts_by(group, where, size), counts_by(group, inside, size)

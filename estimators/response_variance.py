@@ -19,7 +19,7 @@ import numpy as np
 from estimators.array_checks import Bools, Floats
 from estimators.design_counts import BaseCounts
 from estimators.design_variance import variance_of_sum
-from estimators.sampling_stages import SamplingStages, sums_by
+from estimators.sampling_stages import SamplingStages, counts_by, sums_by
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -96,9 +96,8 @@ def _measured(
 ) -> tuple[_Groups, Floats]:
     """Count and average the groups, and give the deviations of the answers from their group."""
     group = stages.response_group
-    size = int(group.max()) + 1
-    asked = np.bincount(group if where is None else group[where], minlength=size).astype(float)
-    answered = np.bincount(group[inside], minlength=size).astype(float)
+    size = stages.response_groups
+    asked, answered = counts_by(group, where, size), counts_by(group, inside, size)
     centres = sums_by(group, residuals, size) / np.maximum(answered, 1)
     deviations = np.where(inside, residuals - centres[group], 0.0)
     squares = sums_by(group, deviations * deviations, size)

@@ -13,18 +13,15 @@ from estimators.design_counts import design_degrees_of_freedom
 from estimators.design_parts import (
     Counts,
     are_relative,
-    cluster_codes,
-    cluster_members,
-    clusters_there,
-    expansion_of_clusters,
+    drawn_clusters,
+    invited,
     names_of,
     refuse_more_than_there,
     stratum_codes,
     stratum_sizes,
 )
-from estimators.errors import InputError
 from estimators.results import Caution
-from estimators.sampling_stages import SamplingStages, stages_of_clusters, stages_of_rows
+from estimators.sampling_stages import SamplingStages, stages_of_rows
 from estimators.weighted_stages import universe_of_weights, weighted_stages
 
 
@@ -182,10 +179,9 @@ class SampleDesign:
             Rows.
         population_size : int, optional
             People invited; not needed with strata.
-        strata : (n,) labels, optional
-            Stratum of each row, within which those who answered are taken to be like the others.
-        population_sizes : dict, optional
-            {label: people invited}; together with ``strata``.
+        strata, population_sizes : optional
+            As for :meth:`stratified`: those who answered are taken to be like the others of their
+            stratum.
 
         Raises
         ------
@@ -195,23 +191,9 @@ class SampleDesign:
         """
         if strata is None and population_sizes is None:
             base = cls.simple_random(n, population_size=population_size)
-            return replace(base, cautions=(caution.ATTEMPTED_CENSUS,))
-        if strata is None or population_sizes is None:
-            raise InputError(
-                "strata" if strata is None else "population_sizes",
-                None,
-                "must be given together with the other of strata and population_sizes",
-                "give both or neither",
-            )
-        stratum_codes(strata, as_count(n, "n"))
-        base = cls.stratified(strata, population_sizes=population_sizes)
-        if population_size is not None and population_size != base.population_size:
-            raise InputError(
-                "population_size",
-                population_size,
-                f"must equal the sum of population_sizes, {base.population_size:,}",
-                "correct one of them or leave population_size out",
-            )
+        else:
+            stratum, sizes = invited(n, strata, population_sizes, population_size)
+            base = cls.stratified(stratum, population_sizes=sizes)
         return replace(base, cautions=(caution.ATTEMPTED_CENSUS,))
 
     @classmethod
@@ -224,19 +206,7 @@ class SampleDesign:
     ) -> SampleDesign:
         """Describe a random sample of clusters of which every member answered.
 
-        Parameters
-        ----------
-        clusters : (n,) labels
-            Cluster of each row.
-        population_clusters : int or dict, optional
-            Clusters in the universe; {stratum: clusters} where there are strata.
-        strata : (n,) labels, optional
-            Stratum of each row, within which the clusters were drawn.
-
-        Raises
-        ------
-        InputError
-            If a cluster lies in two strata, or a number is missing, not whole or too small.
+        Parameters and errors are those of :meth:`two_stage`, without ``cluster_sizes``.
 
         References
         ----------
@@ -375,19 +345,12 @@ class SampleDesign:
         population_clusters: int | Counts | None,
         cluster_sizes: Counts | None,
     ) -> SampleDesign:
-        stratum = stratum_codes(strata, np.size(clusters))
-        cluster = cluster_codes(clusters, stratum[0])
-        there = clusters_there(population_clusters, stratum, cluster[0])
-        rows, members = cluster_members(cluster_sizes, cluster)
-        stages = stages_of_clusters(
-            (stratum[0], names_of(stratum[1])), (cluster[0], names_of(cluster[1])), there, members
-        )
+        stages, weights, size = drawn_clusters(clusters, strata, population_clusters, cluster_sizes)
         known = population_clusters is not None
-        first = expansion_of_clusters(there, stratum[0], cluster[0])
         return cls(
-            n=len(cluster[0]),
-            weights=frozen(first * (members / rows)[cluster[0]]),
-            population_size=int(members.sum()) if known and bool(np.all(first == 1.0)) else None,
+            n=len(weights),
+            weights=frozen(weights),
+            population_size=size,
             stages=stages,
             relative_weights=not known,
             cautions=() if known else (caution.ENDLESS_FIRST_STAGE,),

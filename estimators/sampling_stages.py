@@ -67,6 +67,11 @@ class SamplingStages:
         """(n,) unit of each row."""
         return np.arange(len(self.stratum)) if self.unit is None else self.unit
 
+    @property
+    def response_groups(self) -> int:
+        """How many response groups there are."""
+        return int(self.response_group.max()) + 1
+
     def endless(self) -> SamplingStages:
         """Return the same rows, drawn from endlessly many units."""
         return replace(self, units_there=frozen(np.full_like(self.units_there, np.inf)))
@@ -140,6 +145,11 @@ def _with_clusters_as_strata(
 def sums_by(codes: Codes, values: Floats, how_many: int) -> Floats:
     """Return (how_many,) sums of the values that carry each code."""
     return np.asarray(np.bincount(codes, weights=values, minlength=how_many), dtype=np.float64)
+
+
+def counts_by(codes: Codes, mask: Bools | None, how_many: int) -> Floats:
+    """Return (how_many,) how often each code stands inside the mask; None for everywhere."""
+    return np.bincount(codes, weights=mask, minlength=how_many).astype(np.float64)
 
 
 def _two_stages(

@@ -10,6 +10,7 @@ from numpy.typing import ArrayLike
 from estimators.array_checks import Codes, Floats, as_count
 from estimators.design_parts import (
     Counts,
+    Strata,
     cluster_codes,
     clusters_there,
     names_of,
@@ -18,8 +19,6 @@ from estimators.design_parts import (
 )
 from estimators.errors import InputError
 from estimators.sampling_stages import SamplingStages, stages_of_clusters, stages_of_rows
-
-Strata = tuple[Codes, list[object]]
 
 _ROUNDING = 1e-9
 

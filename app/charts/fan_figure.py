@@ -163,45 +163,24 @@ def _add_box(
     figure: go.Figure, foot: float, top: float, line: dict[str, object], fill: str
 ) -> None:
     """Add a full-width rectangle to the left panel."""
-    figure.add_trace(
-        go.Scatter(
-            x=[0, 1, 1, 0, 0],
-            y=[foot, foot, top, top, foot],
-            mode="lines",
-            line=line,
-            fill="toself",
-            fillcolor=fill,
-            hoverinfo="skip",
-            cliponaxis=False,
-        )
-    )
+    corners = [(0.0, foot), (1.0, foot), (1.0, top), (0.0, top), (0.0, foot)]
+    _add_line(figure, corners, line, axis="", fill="toself", fillcolor=fill)
 
 
 def _add_area(
     figure: go.Figure, corners: Strokes, edge: dict[str, object], palette: Palette, *, axis: str
 ) -> None:
     """Add a hatched area to one of the panels."""
-    closed = [*corners, corners[0]]
-    figure.add_trace(
-        go.Scatter(
-            x=[x for x, _ in closed],
-            y=[y for _, y in closed],
-            mode="lines",
-            line=edge,
-            fill="toself",
-            fillcolor=palette.page,
-            fillpattern={
-                "shape": "/",
-                "size": 6,
-                "solidity": 0.35,
-                "fgcolor": palette.figure,
-                "bgcolor": palette.page,
-            },
-            hoverinfo="skip",
-            cliponaxis=False,
-            xaxis="x" + axis,
-            yaxis="y" + axis,
-        )
+    hatch = {"shape": "/", "size": 6, "solidity": 0.35}
+    colours = {"fgcolor": palette.figure, "bgcolor": palette.page}
+    _add_line(
+        figure,
+        [*corners, corners[0]],
+        edge,
+        axis=axis,
+        fill="toself",
+        fillcolor=palette.page,
+        fillpattern=hatch | colours,
     )
 
 
@@ -239,8 +218,15 @@ def _draw_curve(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Pal
     _add_line(figure, [(0, 0), (0, 1)], {"color": palette.hair, "width": 1})
 
 
-def _add_line(figure: go.Figure, points: Strokes, line: dict[str, object]) -> None:
-    """Add a line to the right panel."""
+def _add_line(
+    figure: go.Figure,
+    points: Strokes,
+    line: dict[str, object],
+    *,
+    axis: str = "2",
+    **look: object,
+) -> None:
+    """Add a line to a panel: the right one, or the left one for the axis ""."""
     figure.add_trace(
         go.Scatter(
             x=[x for x, _ in points],
@@ -249,8 +235,9 @@ def _add_line(figure: go.Figure, points: Strokes, line: dict[str, object]) -> No
             line=line,
             hoverinfo="skip",
             cliponaxis=False,
-            xaxis="x2",
-            yaxis="y2",
+            xaxis=f"x{axis}",
+            yaxis=f"y{axis}",
+            **look,
         )
     )
 

@@ -34,8 +34,9 @@ def show_rails(
     else:
         grouping = data.question(split)
         rows = figure_rows(data, group_requests(grouping, request)) if grouping else ()
-    for number, row in enumerate(rows):
-        _show_row(row, number, same=_same(row.request, request))
+    with st.container(key="rails", gap=None):
+        for number, row in enumerate(rows):
+            _show_row(row, number, same=_same(row.request, request))
     return rows
 
 

@@ -38,7 +38,8 @@ def show_number(data: StudyData, figure: Figure, text: FigureText) -> None:
         f'<p class="hr-number" data-figure="value">{as_html(value)} '
         f"<small>{as_html(text.title)}, {as_html(text.who)}</small></p>"
         f'<p class="hr-sentence" data-figure="sentence">{as_html(text.sentence)}</p>'
-        f'<p class="hw-verdict">{verdict_html(verdict.outcome.value, word=word)}</p>'
+        f'<p class="hw-verdict"><span class="hr-soft">Width check:</span> '
+        f"{verdict_html(verdict.outcome.value, word=word)}</p>"
     )
 
 

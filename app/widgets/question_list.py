@@ -60,8 +60,9 @@ def show_list(questions: tuple[Question, ...], chosen: str) -> None:
         st.html('<p class="hr-soft">No question here.</p>')
         return
     page = _page_of(questions, chosen)
-    for question in questions[page * PAGE : (page + 1) * PAGE]:
-        _show_row(question, chosen)
+    with st.container(key="question_list", gap=None):
+        for question in questions[page * PAGE : (page + 1) * PAGE]:
+            _show_row(question, chosen)
     _show_pages(page, -(-len(questions) // PAGE))
 
 

@@ -17,8 +17,8 @@ SCREEN_STYLE = """
 .hw-kept{margin:0;font-weight:600;color:var(--hr-ink)}
 .hw-standing{margin:0;color:var(--hr-ink);border-left:3px solid var(--hr-figure);padding-left:8px}
 .hw-caption{text-align:left;color:var(--hr-soft);font-size:.875rem;padding:0 0 4px 0}
-.hw-card-head{font-family:"Source Serif","Source Serif 4",Georgia,serif;font-size:1.5rem;font-weight:600;
- margin:0 0 4px 0;padding:0}
+.hw-card-head{font-family:"Source Serif","Source Serif 4",Georgia,serif;font-size:1.5rem;
+ font-weight:600; margin:0 0 4px 0;padding:0}
 .hw-proposal{border-left:3px solid var(--hr-figure);padding:2px 0 2px 12px;margin:8px 0}
 .hw-proposal p{margin:0}
 .hw-bar{display:grid;grid-template-columns:minmax(6em,12em) 1fr 5em;gap:8px;align-items:center;
@@ -33,6 +33,12 @@ SCREEN_STYLE = """
  color:var(--hr-ink)}
 .hr-held .hw-value,.hr-held .hw-between{color:var(--hr-soft);font-weight:400}
 .hw-between{grid-column:2;font-size:.875rem;color:var(--hr-soft)}
+[class*="st-key-study_"] [data-testid="stPageLink-NavLink"],
+.stMain :not(.st-key-journey)>[data-testid="stElementContainer"] [data-testid="stPageLink-NavLink"]{
+ padding-left:0}
+.st-key-first_figure .hr-box{max-width:36rem}
+.hw-list{margin:0;padding-left:1.25rem;color:var(--hr-ink)}
+.hw-list li{margin:0 0 4px 0}
 .hw-strip{background:var(--hr-panel);padding:12px 16px;border-radius:4px}
 .hw-strip p{margin:0 0 4px 0}
 .hw-part{display:block;height:12px;border:1px solid var(--hr-hair);max-width:30rem}
@@ -48,6 +54,9 @@ SCREEN_STYLE = """
  text-underline-offset:3px;text-align:left}
 .st-key-pickers_line{display:none}
 @media (max-width:640px){
+ .hr-number small{display:block;margin:8px 0 0 0}
+ [data-testid="stColumn"]:has(.st-key-question_card){order:-1}
+ .st-key-journey a{padding:4px 6px}
  .st-key-pickers_line{display:flex}
  .st-key-pickers{display:none}
  .st-key-journey{column-gap:4px}

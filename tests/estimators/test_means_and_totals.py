@@ -185,6 +185,24 @@ def test_subgroup_of_five_covers_as_promised():
     assert hits / repeats == pytest.approx(0.95, abs=3 * math.sqrt(0.95 * 0.05 / repeats))
 
 
+def test_any_simple_random_figure_has_design_effect_one(spend):
+    design = SampleDesign.simple_random(60, population_size=150)
+    group = np.arange(60) % 4 == 0
+    for estimator in (mean, total):
+        for where, rows in ((None, 60), (group, 15)):
+            found = estimator(spend, design, where=where)
+            assert found.design_effect == pytest.approx(1.0, rel=1e-9)
+            assert found.effective_base == pytest.approx(rows, rel=1e-9)
+            assert found.equivalent_base == pytest.approx(rows / (1 - 60 / 150), rel=1e-9)
+
+
+def test_drawing_with_replacement_loses_the_correction(spend):
+    """Against drawing without replacement its design effect is 1/(1-f)."""
+    found = mean(spend, SampleDesign.simple_random(60, population_size=150, replacement=True))
+    assert found.design_effect == pytest.approx(1 / (1 - 60 / 150), rel=1e-9)
+    assert found.equivalent_base == pytest.approx(60, rel=1e-9)
+
+
 def test_one_stratum_is_a_simple_random_sample(spend):
     design = SampleDesign.stratified(["x"] * 60, population_sizes={"x": 300})
     contracts.assert_same(

@@ -217,9 +217,9 @@ def test_hypergeometric_is_for_simple_random_samples_of_everyone():
 
 def test_wrong_calls_are_refused_by_name():
     design = SampleDesign.simple_random(4)
-    with pytest.raises(ValueError, match="^chosen must say true or false .* but got 2.0"):
+    with pytest.raises(ValueError, match=r"^chosen must say true or false .* but got 2\.0"):
         proportion([0, 1, 2, 1], design)
-    with pytest.raises(ValueError, match="^method must be the name of a method"):
+    with pytest.raises(ValueError, match=r"^method must be the name of a method"):
         proportion([0, 1, 1, 1], design, method="gauss")
     assert proportion([0, 1, 2, 1], design, where=[True, True, False, True]).base == 3
 

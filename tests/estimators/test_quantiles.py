@@ -110,7 +110,7 @@ def test_equal_answers_are_tied_heavily():
 
 @pytest.mark.parametrize("probability", [0, 1, -0.5, 50, math.nan])
 def test_probability_is_checked(probability):
-    with pytest.raises(ValueError, match="^probability must lie between 0 and 1"):
+    with pytest.raises(ValueError, match=r"^probability must lie between 0 and 1"):
         quantile([1.0, 2.0], probability, SampleDesign.simple_random(2))
 
 
