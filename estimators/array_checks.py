@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from numbers import Real
-from typing import TypeVar
+from typing import Any, TypeVar
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -133,7 +133,7 @@ def as_labels(labels: ArrayLike, name: str, n: int | None = None) -> tuple[Codes
 
 
 def as_counts_by_label(
-    counts: Mapping[object, object], name: str, labels: list[object], of_what: str
+    counts: Mapping[Any, object], name: str, labels: list[object], of_what: str
 ) -> Floats:
     """Return the whole number given for each label, and refuse labels without rows."""
     missing = [label for label in labels if label not in counts]
@@ -145,7 +145,7 @@ def as_counts_by_label(
 
 
 def refuse_labels_without_rows(
-    counts: Mapping[object, object], name: str, labels: list[object]
+    counts: Mapping[Any, object], name: str, labels: list[object]
 ) -> None:
     """Refuse a count for a label that no row carries."""
     present = set(labels)

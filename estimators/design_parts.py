@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -18,7 +19,7 @@ from estimators.array_checks import (
 from estimators.errors import InputError
 from estimators.sampling_stages import SamplingStages, stages_of_clusters
 
-Counts = Mapping[object, int]
+Counts = Mapping[Any, int]
 Strata = tuple[Codes, list[object]]
 
 _RELATIVE = 1e-3  # a mean weight this close to 1 says nothing about the size of the universe

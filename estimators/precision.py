@@ -170,7 +170,7 @@ def empty_estimate(base: AnsweredBase, confidence: float, method: str) -> Estima
         value=nan,
         standard_error=nan,
         interval=Interval(nan, nan, confidence, method),
-        degrees_of_freedom=0.0,
+        degrees_of_freedom=nan,
         base=0,
         weighted_base=0.0,
         design_effect=nan,

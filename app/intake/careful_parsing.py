@@ -105,22 +105,23 @@ def _rows(
     raw: list[str] = []
     end = "" if text.endswith(("\n", "\r")) else "\n"
     source = io.StringIO(f"{text}{end}{_END}", newline="")
-    reader = csv.reader(_copied(source, raw), **csv_options(dialect))  # type: ignore[call-overload]
+    reader = csv.reader(_copied(source, raw), **csv_options(dialect))
     stray = _stray_quote(dialect)
     line = first_line
-    cells: list[str] = []
     try:
         for cells in reader:
             if cells == [_END]:
                 return
+            if raw[-1] == _END:
+                break
             if stray is not None and (len(raw) > 1 or stray.search(raw[0])):
                 _check_quotes("".join(raw), line, len(raw), dialect, file_name, found)
             yield line, cells
             line += len(raw)
             raw.clear()
     except csv.Error as error:
-        raise _unclosed(file_name, line, cells=[]) from error
-    raise _unclosed(file_name, line, cells)
+        raise _unclosed(file_name, line, "".join(raw), dialect) from error
+    raise _unclosed(file_name, line, "".join(raw), dialect)
 
 
 def _copied(source: io.StringIO, raw: list[str]) -> Iterator[str]:
@@ -144,23 +145,37 @@ def _check_quotes(
     reader = csv.reader(
         io.StringIO(raw, newline=""),
         strict=True,
-        **csv_options(dialect),  # type: ignore[call-overload]
+        **csv_options(dialect),
     )
     try:
         next(reader)
     except csv.Error:
         if length > 1:
-            raise _unclosed(file_name, line, cells=[]) from None
+            raise _unclosed(file_name, line, raw, dialect) from None
         found.quotes.append(line)
 
 
-def _unclosed(file_name: str, line: int, cells: list[str]) -> FieldworkFileError:
-    """Return the refusal, with the line on which the last cell of an open row begins."""
-    line += sum(len(re.findall("\r\n|\n|\r", cell)) for cell in cells[:-1])
+def _unclosed(file_name: str, line: int, raw: str, dialect: Dialect) -> FieldworkFileError:
+    """Return the refusal, with the line on which the mark stands."""
+    at = raw[: _opening(raw, dialect)]
+    line += len(re.findall("\r\n|\n|\r", at))
     return FieldworkFileError(
         f"{file_name}: the quotation mark opened in line {line:,} is not closed where its cell "
         "ends: correct that line, or read the file without quotation marks."
     )
+
+
+def _opening(raw: str, dialect: Dialect) -> int:
+    """Return where the first cell begins whose closing mark is missing or misplaced."""
+    mark, cut = re.escape(dialect.quote), re.escape(dialect.delimiter)
+    inside = rf"\\.|[^{mark}\\]" if dialect.escape else f"{mark}{mark}|[^{mark}]"
+    cell = re.compile(
+        f"(?:{mark}(?:{inside})*{mark}|(?!{mark})[^{cut}\r\n]*)(?:{cut}|[\r\n]+)", re.S
+    )
+    at = 0
+    while (match := cell.match(raw, at)) is not None:
+        at = match.end()
+    return at
 
 
 def _filled(row: tuple[int, list[str]], found: _Found) -> bool:

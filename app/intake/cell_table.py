@@ -5,7 +5,7 @@ Answers repeat, so work on the different cells of a column is far less than work
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 import pyarrow as pa  # type: ignore[import-untyped]
@@ -31,6 +31,13 @@ class CellColumn:
     distinct: pa.Array
     codes: np.ndarray
 
+    def keep(self, rows: np.ndarray) -> CellColumn:
+        """Return the column with the rows flagged in (n rows,) ``rows`` and their cells only."""
+        codes = self.codes[rows]
+        used = np.bincount(codes, minlength=len(self.distinct)) > 0
+        position = (np.cumsum(used) - 1).astype(codes.dtype)
+        return CellColumn(self.distinct.filter(pa.array(used)), position[codes])
+
     def counts(self) -> np.ndarray:
         """Return (distinct,) how many rows hold each cell."""
         return np.bincount(self.codes, minlength=len(self.distinct))
@@ -47,9 +54,48 @@ class CellColumn:
             flags[flags] = as_flags(pc.match_substring_regex(cells, _BLANK))
         return flags
 
+    def blank_rows(self) -> np.ndarray:
+        """Return (n rows,) bool: rows without an answer."""
+        return self.rows_with(self.blank())
+
     def rows_with(self, flags: np.ndarray) -> np.ndarray:
         """Return (n rows,) bool: rows whose cell is flagged in (distinct,) ``flags``."""
         return np.asarray(flags[self.codes])
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class WholeColumn:
+    """The cells of a column of small whole numbers, read without a look at their text.
+
+    Parameters
+    ----------
+    values : array
+        (n rows,) int8 or int16; the smallest value of the type stands for a blank cell.
+    """
+
+    values: np.ndarray
+
+    def keep(self, rows: np.ndarray) -> WholeColumn:
+        """Return the column with the rows flagged in (n rows,) ``rows`` only."""
+        return WholeColumn(self.values[rows])
+
+    def cell(self, row: int) -> str:
+        """Return one cell."""
+        value = self.values[row]
+        return "" if value == np.iinfo(self.values.dtype).min else str(int(value))
+
+    def blank_rows(self) -> np.ndarray:
+        """Return (n rows,) bool: rows without an answer."""
+        return np.asarray(self.values == np.iinfo(self.values.dtype).min)
+
+    def numbers(self) -> np.ndarray:
+        """Return (n rows,) float64; blank cells are NaN."""
+        numbers = self.values.astype(np.float64)
+        numbers[self.blank_rows()] = np.nan
+        return numbers
+
+
+Column = CellColumn | WholeColumn
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -58,21 +104,20 @@ class CellTable:
 
     Parameters
     ----------
-    columns : tuple of CellColumn
+    columns : tuple of CellColumn or WholeColumn
         One per column of the table.
     lines : array
         (n rows,) int: line of the file on which a row begins, from 1.
     """
 
-    columns: tuple[CellColumn, ...]
+    columns: tuple[Column, ...]
     lines: np.ndarray
 
     def keep(self, rows: np.ndarray) -> CellTable:
         """Return the table with the rows flagged in (n rows,) ``rows`` only."""
         if rows.all():
             return self
-        columns = tuple(replace(c, codes=c.codes[rows]) for c in self.columns)
-        return CellTable(columns, self.lines[rows])
+        return CellTable(tuple(c.keep(rows) for c in self.columns), self.lines[rows])
 
     def row(self, at: int) -> tuple[str, ...]:
         """Return the cells of one row."""

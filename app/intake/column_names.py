@@ -81,8 +81,7 @@ def _unique(read: list[str]) -> tuple[list[str], list[tuple[str, str]]]:
                 unique = f"{unique}'"
             if name:
                 repeated.append((name, unique))
-        seen.add(unique)
-        seen.add(name)
+        seen |= {unique, name or unique}
         taken.add(unique)
         names.append(unique)
     return names, repeated
@@ -113,6 +112,4 @@ def _twins(names: list[str]) -> tuple[Remark, ...]:
     ]
     if not twins:
         return ()
-    return (
-        Remark("twin_names", f"Names differ only in capital letters: {name_list(twins)}."),
-    )
+    return (Remark("twin_names", f"Names differ only in capital letters: {name_list(twins)}."),)

@@ -62,8 +62,8 @@ def control_remark(columns: list[ProfiledColumn], lines: np.ndarray) -> tuple[Re
     return (
         Remark(
             "control_characters",
-            f"Unreadable control characters were removed from {count_phrase(count, 'cell', 'cells')}"
-            f" in {where}.",
+            "Unreadable control characters were removed from "
+            f"{count_phrase(count, 'cell', 'cells')} in {where}.",
             rows=row_list(lines[np.logical_or.reduce(flags)]),
             column=touched[0].name if len(touched) == 1 else "",
         ),

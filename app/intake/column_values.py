@@ -10,7 +10,7 @@ import pandas as pd
 import pyarrow as pa  # type: ignore[import-untyped]
 import pyarrow.compute as pc  # type: ignore[import-untyped]
 
-from app.intake.cell_table import CellColumn, as_flags
+from app.intake.cell_table import CellColumn, Column, WholeColumn, as_flags
 from app.intake.number_forms import WORDS, Form, NumberForm, fits, number_form, to_numbers
 from app.intake.reading import ColumnReading, Reading
 
@@ -35,6 +35,8 @@ class ProfiledColumn:
         How its numbers are written; words for text.
     cleaned : array
         (distinct,) bool: cells from which control characters were removed.
+    whole : WholeColumn or None
+        The numbers of a column that was read as such; ``cells`` is empty then.
     """
 
     name: str
@@ -43,6 +45,12 @@ class ProfiledColumn:
     word: np.ndarray
     form: NumberForm
     cleaned: np.ndarray
+    whole: WholeColumn | None = None
+
+    @property
+    def empty(self) -> bool:
+        """Whether nobody answered."""
+        return bool(self.blank.all()) and self.whole is None
 
     @property
     def answered(self) -> pa.Array:
@@ -70,8 +78,15 @@ class NumberMarks:
     evidence: str
 
 
-def profile_column(name: str, cells: CellColumn, told: ColumnReading | None) -> ProfiledColumn:
+_NO_CELLS = CellColumn(pa.array([], pa.string()), np.zeros(0, np.uint8))
+_NO_FLAGS = np.zeros(0, dtype=bool)
+
+
+def profile_column(name: str, cells: Column, told: ColumnReading | None) -> ProfiledColumn:
     """Return what a column holds, by its cells alone."""
+    if isinstance(cells, WholeColumn):
+        form = NumberForm(Form.WHOLE)
+        return ProfiledColumn(name, _NO_CELLS, _NO_FLAGS, _NO_FLAGS, form, _NO_FLAGS, cells)
     blank = cells.blank()
     no_word = np.zeros(len(blank), dtype=bool)
     column = ProfiledColumn(name, cells, blank, no_word, WORDS, no_word)
@@ -187,6 +202,8 @@ def _told_form(column: ProfiledColumn, marks: NumberMarks, told: ColumnReading) 
 def column_answers(column: ProfiledColumn) -> np.ndarray | pd.api.extensions.ExtensionArray:
     """Return (n rows,) float64 where every answer is a number, else text; blanks are missing."""
     cells, form = column.cells, column.form
+    if column.whole is not None:
+        return column.whole.numbers()
     if form.form in (Form.WORDS, Form.DOUBTFUL):
         distinct = pc.if_else(pa.array(column.blank), pa.scalar(None, pa.string()), cells.distinct)
         text = pa.DictionaryArray.from_arrays(pa.array(cells.codes), distinct).dictionary_decode()

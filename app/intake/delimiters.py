@@ -9,13 +9,14 @@ import re
 from collections import Counter
 from collections.abc import Iterator
 from dataclasses import dataclass
+from typing import Any
 
 from app.intake.reading import Reading
 
 NAMES = {",": "comma", ";": "semicolon", "\t": "tab", "|": "vertical bar"}
 
 _CANDIDATES = ("\t", ";", "|", ",")
-_SEP_LINE = re.compile(r"\"?sep=(.)\"?(?=\r|\n|$)", re.IGNORECASE)
+_SEP_LINE = re.compile(r"\"?sep=([^\w\r\n\x00\\\"'])\"?(?=\r|\n|$)", re.IGNORECASE)
 _SINGLE_QUOTED = re.compile(r"(?:^|[,;\t|])'[^'\r\n]*'(?=[,;\t|\r\n]|$)", re.MULTILINE)
 _BACKSLASH_QUOTE = re.compile(r"[^,;\t|\r\n\\]\\\"[^,;\t|\r\n\"]")
 _DOUBLED_QUOTE = re.compile(r"[^,;\t|\r\n\"]\"\"[^,;\t|\r\n\"]")
@@ -93,9 +94,9 @@ def records(text: str, dialect: Dialect, first_line: int = 1) -> Iterator[Record
         before = reader.line_num
 
 
-def csv_options(dialect: Dialect) -> dict[str, object]:
+def csv_options(dialect: Dialect) -> dict[str, Any]:
     """Return the keywords of ``csv.reader`` for a dialect."""
-    options: dict[str, object] = {"delimiter": dialect.delimiter}
+    options: dict[str, Any] = {"delimiter": dialect.delimiter}
     if not dialect.quote:
         return options | {"quoting": csv.QUOTE_NONE}
     options["quotechar"] = dialect.quote

@@ -79,7 +79,7 @@ def decode_file(content: bytes, encoding: str | None, file_name: str) -> Decoded
 
 def _as_told(content: bytes, encoding: str, file_name: str) -> DecodedFile:
     if encoding == MIXED:
-        return _mixed(content, content.decode("utf-8", "surrogateescape"), file_name)
+        return _mixed(content.decode("utf-8", "surrogateescape"), file_name)
     return _decoded(content, encoding, f"Read as {encoding}, as told.", file_name)
 
 
@@ -142,7 +142,7 @@ def _not_utf8(content: bytes, file_name: str) -> DecodedFile:
     lone = len(_LONE_BYTE.findall(escaped))
     several = sum(1 for c in escaped if c > "\x7f") - lone
     if several * 10 > lone:
-        return _mixed(content, escaped, file_name)
+        return _mixed(escaped, file_name)
     try:
         return _decoded(
             content,
@@ -157,7 +157,7 @@ def _not_utf8(content: bytes, file_name: str) -> DecodedFile:
         ) from error
 
 
-def _mixed(content: bytes, escaped: str, file_name: str) -> DecodedFile:
+def _mixed(escaped: str, file_name: str) -> DecodedFile:
     """Read the bytes that are no UTF-8 as Windows-1252, and name their lines."""
     lines = sorted({escaped.count("\n", 0, m.start()) + 1 for m in _first(escaped)})
     try:

@@ -52,7 +52,7 @@ def check_bytes(content: bytes, file_name: str) -> None:
     FieldworkFileError
         One sentence that says what the file is and what to upload in its place.
     """
-    if not content.strip(b" \t\r\n\x00"):
+    if not content[:_SAMPLE].strip(b" \t\r\n\x00") and not content.strip(b" \t\r\n\x00"):
         raise FieldworkFileError(f"{file_name} is empty: export it again and upload it.")
     reason = _signature(content)
     if reason:

@@ -102,7 +102,8 @@ def _is_title(rows: list[Record], at: int, width: int) -> bool:
     if filled == 1 and (width > 2 or len(row) == 1):
         later = max(sum(bool(c.strip()) for c in r.cells) for r in rows[at + 1 : at + 30])
         return later > 1
-    return len(row) < width and filled <= width // 3
+    gap = rows[at + 1].line > rows[at].last_line + 1
+    return len(row) < width and (gap or filled <= width // 3)
 
 
 def _count_header_rows(rows: list[list[str]]) -> int:
@@ -151,9 +152,7 @@ def _numeric_columns(below: list[list[str]]) -> list[int]:
     return found
 
 
-def _reads_like_questions(
-    names: list[str], filled: dict[int, str], below: list[list[str]]
-) -> bool:
+def _reads_like_questions(names: list[str], filled: dict[int, str], below: list[list[str]]) -> bool:
     """Tell question texts from answers where no column holds numbers."""
     answers = {(i, cell.strip()) for row in below for i, cell in enumerate(row) if cell.strip()}
     if not answers or len(below) < 3 or any(item in answers for item in filled.items()):
@@ -183,7 +182,9 @@ def _evidence(header: tuple[Record, ...], name_row: int, table: list[Record]) ->
         return (f"Line {header[0].line:,} names the columns.",)
     named = header[name_row - 1].line
     texts = [f"{row.line:,}" for n, row in enumerate(header, start=1) if n != name_row]
-    first = f" Answers begin in line {table[len(header)].line:,}." if len(table) > len(header) else ""
+    first = (
+        f" Answers begin in line {table[len(header)].line:,}." if len(table) > len(header) else ""
+    )
     return (
         f"Line {named:,} names the columns and line {' and '.join(texts)} holds texts: "
         f"no such cell occurs among the answers.{first}",

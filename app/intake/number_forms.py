@@ -127,9 +127,7 @@ def _decimal_form(cells: pa.Array, mark: str) -> NumberForm:
 
 def _plain(mark: str) -> str:
     decimal = _CLASS[mark]
-    return (
-        f"^{_PAD}{_SIGN}(?:{_WHOLE}(?:{decimal}[0-9]+)?{_EXPONENT}|{decimal}[0-9]+){_PAD}$"
-    )
+    return f"^{_PAD}{_SIGN}(?:{_WHOLE}(?:{decimal}[0-9]+)?{_EXPONENT}|{decimal}[0-9]+){_PAD}$"
 
 
 def _grouped(thousands: str, decimal: str) -> str:

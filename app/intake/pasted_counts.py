@@ -13,7 +13,9 @@ _GROUPED = re.compile(rf"(\d{{1,3}})(?P<mark>[.,'’{_SPACE}])\d{{3}}(?:(?P=mark
 _WITH_DECIMALS = re.compile(rf"(?P<whole>[\d.,'’{_SPACE}]*\d)(?P<mark>[.,])(?P<decimals>\d+)")
 _SPLITS = (r"\t+", r"[;|]", r"[:=]\s*(?=[^:=]*$)", r"\s{2,}(?=\S+(?:\s\S+)*$)")
 _COMMA_SPACE = re.compile(r"(?P<label>.*\S),\s+(?P<number>\S+)")
-_LAST_WORD = re.compile(rf"(?P<label>.*[^\s,])[ ,\u00a0]\s*(?P<number>[-+−]?\d[\d.,'’\u202f\u2009]*)")
+_LAST_WORD = re.compile(
+    r"(?P<label>.*[^\s,])[ ,\u00a0]\s*(?P<number>[-+−]?\d[\d.,'’\u202f\u2009]*)"
+)
 _TWO_WAYS = re.compile(r".*(?:[\s,]\d{1,3}[ \u00a0]\d{3}|,\d{1,3},\d{3})")
 _TOTAL = re.compile(
     r"(?:grand )?totals?|sum|all|overall|universe|summe|gesamt|gesamtsumme|insgesamt|somme|"

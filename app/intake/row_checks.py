@@ -43,7 +43,8 @@ def without_left_out(
 
 def footer_remarks(table: CellTable) -> tuple[Remark, ...]:
     """Return a remark on rows at the foot that look like totals or notes; nothing is removed."""
-    lines, example = [], ""
+    lines: list[int] = []
+    example = ""
     for at in range(len(table.lines) - 1, max(len(table.lines) - 1 - _FOOT, 0), -1):
         filled = [cell.strip() for cell in table.row(at) if cell.strip()]
         if not _is_footer(filled, len(table.columns)):
@@ -78,5 +79,5 @@ def _blank_rows(table: CellTable) -> np.ndarray:
     for column in table.columns:
         if not empty.any():
             break
-        empty &= column.rows_with(column.blank())
+        empty &= column.blank_rows()
     return empty

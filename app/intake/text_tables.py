@@ -12,7 +12,7 @@ import numpy as np
 import pandas as pd
 
 from app.intake.careful_parsing import parse_carefully
-from app.intake.cell_parsing import parse_regular
+from app.intake.cell_parsing import Body, parse_regular
 from app.intake.cell_table import CellTable
 from app.intake.column_names import ColumnNames, column_names, unnamed_remark
 from app.intake.column_remarks import code_evidence, column_remarks, control_remark
@@ -38,6 +38,7 @@ from app.intake.header_rows import HeaderRows, find_header
 from app.intake.number_forms import Form
 from app.intake.reading import Reading
 from app.intake.row_checks import footer_remarks, without_blank_rows, without_left_out
+from app.intake.whole_numbers import likely_whole
 
 MOST_COLUMNS = 20_000
 
@@ -45,6 +46,7 @@ _LINE_END = re.compile(rb"\r\n|\n|\r")
 _SAMPLE = 256 << 10
 _LARGEST_SAMPLE = 16 << 20
 _SAMPLE_LINES = 40
+_WORTH_IT = 1 << 20  # bytes from which columns of whole numbers are parsed as such
 
 
 def read_fieldwork_file(
@@ -82,14 +84,16 @@ def read_fieldwork_file(
     decoded = decode_file(content, told.encoding, name)
     del content
     check_not_binary(decoded.content, name)
-    layout = _layout(decoded.content, told, name)
-    return _file(decoded, layout, told, file_name, fingerprint)
+    layout = find_layout(decoded.content, told, name)
+    rows = _rows(decoded.content, layout, told, name)
+    decoded = replace(decoded, content=b"")  # the bytes are not needed beside the answers
+    return _file(decoded, layout, rows, told, _FileFacts(file_name, fingerprint))
 
 
 @dataclass(frozen=True, slots=True)
-class _Layout:
-    dialect: Dialect
-    header: HeaderRows
+class _FileFacts:
+    name: str
+    fingerprint: str
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -103,7 +107,8 @@ def _content(source: bytes | Path, name: str) -> bytes:
     if not isinstance(source, Path):
         return bytes(source)
     try:
-        return source.read_bytes()
+        with source.open("rb", buffering=0) as file:  # a buffer would hold the file twice
+            return file.readall()
     except OSError as error:
         raise FieldworkFileError(
             f"{name} cannot be opened: check that it still exists and may be read."
@@ -127,60 +132,10 @@ def _check_reading(told: Reading, name: str) -> None:
         )
 
 
-def _layout(content: bytes, told: Reading, name: str) -> _Layout:
-    """Find how rows are cut and where the table begins, in the first part of the file."""
-    sample = _sample(content)
-    check_text(sample, name)
-    dialect = find_dialect(sample, told)
-    rows = _first_rows(sample, dialect, whole=len(sample.encode()) >= len(content))
-    if not rows:
-        raise FieldworkFileError(f"{name} holds no cells: export it again and upload it.")
-    header = find_header(rows, told)
-    if header.width > MOST_COLUMNS:
-        raise FieldworkFileError(
-            f"{name} has {header.width:,} columns, more than {MOST_COLUMNS:,}: export fewer "
-            "questions at a time."
-        )
-    return _Layout(dialect, header)
-
-
-def _sample(content: bytes) -> str:
-    """Return the first whole lines of the file: 256 KB, or more where lines are long."""
-    size = _SAMPLE
-    while size < min(len(content), _LARGEST_SAMPLE):
-        if content.count(b"\n", 0, size) + content.count(b"\r", 0, size) >= _SAMPLE_LINES:
-            break
-        size *= 2
-    head = content[:size]
-    if size < len(content):
-        end = max(head.rfind(b"\n"), head.rfind(b"\r")) + 1
-        head = head[:end] if end else head
-    return head.decode("utf-8", "ignore")
-
-
-def _first_rows(sample: str, dialect: Dialect, *, whole: bool) -> list[Record]:
-    first_line = 1
-    if dialect.sep_line:
-        match = re.search("\r\n|\n|\r", sample)
-        sample, first_line = sample[match.end() :] if match else "", 2
-    rows = []
-    try:
-        for row in records(sample, dialect, first_line):
-            rows.append(row)
-            if len(rows) > 2_000:
-                break
-    except csv.Error:  # a cell without end: the careful parser will name its line
-        whole = True
-    if not whole and len(rows) > 1:
-        rows.pop()
-    return [row for row in rows if any(cell.strip() for cell in row.cells)]
-
-
 def _file(
-    decoded: DecodedFile, layout: _Layout, told: Reading, file_name: str, fingerprint: str
+    decoded: DecodedFile, layout: Layout, rows: _Rows, told: Reading, facts: _FileFacts
 ) -> FieldworkFile:
-    name = plain_name(file_name)
-    rows = _rows(decoded.content, layout, told, name)
+    name = plain_name(facts.name)
     table, blank = without_blank_rows(rows.table)
     table, left_out = without_left_out(table, told.left_out)
     if not len(table.lines):
@@ -206,23 +161,24 @@ def _file(
     lines = table.lines
     lines.setflags(write=False)
     return FieldworkFile(
-        file_name=file_name,
+        file_name=facts.name,
         answers=_answers(columns),
         question_texts={n: text for n, text in names.texts.items() if n in kept},
         remarks=remarks,
         reading=_settled(decoded, layout, marks, told, columns),
-        fingerprint=fingerprint,
+        fingerprint=facts.fingerprint,
         lines=lines,
         set_aside=tuple(sorted(rows.set_aside + left_out, key=lambda row: row.line)),
     )
 
 
-def _rows(content: bytes, layout: _Layout, told: Reading, name: str) -> _Rows:
+def _rows(content: bytes, layout: Layout, told: Reading, name: str) -> _Rows:
     """Cut the body into cells: quickly where it is regular, else row by row."""
     header, dialect = layout.header, layout.dialect
     before = header.rows[-1].last_line if header.rows else header.lines_above
-    offset = _offset(content, before)
-    table = parse_regular(content, offset, before + 1, dialect, header.width)
+    offset = offset_after(content, before)
+    body = Body(content, offset, before + 1)
+    table = parse_regular(body, dialect, header.width, layout.whole)
     if table is not None:
         return _Rows(table, (), ())
     if header.rows and header.rows[-1].last_line > header.rows[0].line + len(header.rows) - 1:
@@ -241,17 +197,9 @@ def _rows(content: bytes, layout: _Layout, told: Reading, name: str) -> _Rows:
 def _check_header(content: bytes, header: HeaderRows, dialect: Dialect, name: str) -> None:
     """Refuse a header over several lines whose quotation marks are wrong."""
     first = header.rows[0].line
-    start, end = _offset(content, first - 1), _offset(content, header.rows[-1].last_line)
+    start, end = offset_after(content, first - 1), offset_after(content, header.rows[-1].last_line)
     text = content[start:end].decode("utf-8")
     parse_carefully(text, first, dialect, header.width, keep_long=False, file_name=name)
-
-
-def _offset(content: bytes, lines: int) -> int:
-    """Return where the line after the first ``lines`` lines begins."""
-    if lines == 0:
-        return 0
-    ends = (match.end() for match in _LINE_END.finditer(content))
-    return next((end for i, end in enumerate(ends, start=1) if i == lines), len(content))
 
 
 def _named_columns(
@@ -263,7 +211,7 @@ def _named_columns(
         for name, cells in zip(names.names, table.columns, strict=True)
     ]
     nameless = set(names.unnamed) if names.texts or len(names.unnamed) < len(columns) else set()
-    empty = {i for i in nameless if columns[i].blank.all() and columns[i].name not in names.texts}
+    empty = {i for i in nameless if columns[i].empty and columns[i].name not in names.texts}
     remarks = []
     if empty:
         count = f"{len(empty):,} columns" if len(empty) > 1 else "1 column"
@@ -308,7 +256,7 @@ def _answers(columns: list[ProfiledColumn]) -> pd.DataFrame:
 
 def _settled(
     decoded: DecodedFile,
-    layout: _Layout,
+    layout: Layout,
     marks: NumberMarks,
     told: Reading,
     columns: list[ProfiledColumn],

@@ -49,6 +49,20 @@ def test_subgroups_of_strata_with_missing_answers(rates):
         assert covered.mean() == pytest.approx(0.95, abs=0.025), name
 
 
+def test_a_subgroup_with_missing_answers_in_a_simple_sample_is_the_textbook_formula():
+    """(1 - n/N x r/m) s^2 / r: of 40 asked among 100, m = 6 in the subgroup, r = 4 answered."""
+    values = np.arange(40.0) ** 2
+    where = np.arange(40) % 7 == 2
+    answered = np.arange(40) < 25
+    found = mean(
+        values, SampleDesign.simple_random(40, population_size=100), where=where, answered=answered
+    )
+    spread = values[where & answered].var(ddof=1)
+    assert (found.base, found.degrees_of_freedom) == (4, 3)
+    assert found.standard_error**2 == pytest.approx((1 - 0.4 * 4 / 6) * spread / 4, rel=1e-12)
+    assert found.design_effect == pytest.approx(1.0, rel=1e-9)
+
+
 def test_a_stratum_in_which_nobody_answered_is_taken_to_be_like_the_others():
     strata = np.repeat(["a", "b", "c"], 10)
     sizes = {"a": 50, "b": 60, "c": 90}
