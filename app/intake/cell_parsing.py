@@ -11,7 +11,7 @@ from dataclasses import dataclass
 import numpy as np
 import pyarrow as pa  # type: ignore[import-untyped]
 import pyarrow.compute as pc  # type: ignore[import-untyped]
-from pyarrow import csv as quick_csv  # type: ignore[import-untyped]
+from pyarrow import csv as quick_csv
 
 from app.intake.cell_table import CellColumn, CellTable, Column, column_of
 from app.intake.delimiters import Dialect

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import codecs
 import re
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from app.intake.fieldwork_files import FieldworkFileError, Remark, lines_phrase, row_list, short
 
@@ -18,6 +18,7 @@ _MARKS = (
     (codecs.BOM_UTF16_BE, "utf-16-be"),
 )
 _WORD_WITH_ACCENT = re.compile(r"\w*[^\x00-\x7f]\w*")
+_NOT_ASCII = re.compile("[^\x00-\x7f]")
 _LONE_BYTE = re.compile("[\udc80-\udcff]")
 _TWICE_ENCODED = (b"\xc3\x83\xc2", b"\xc3\x83\xc5", b"\xc3\x83\xc6", b"\xc3\xa2\xe2\x82\xac")
 _HEAD = 1 << 20
@@ -85,6 +86,9 @@ def _as_told(content: bytes, encoding: str, file_name: str) -> DecodedFile:
 
 def _decoded(content: bytes, encoding: str, evidence: str, file_name: str) -> DecodedFile:
     """Decode with a known encoding; a mark at the start is no part of the first name."""
+    if encoding == "utf-8" and _is_utf8(content):
+        content = content.removeprefix(codecs.BOM_UTF8)
+        return DecodedFile(content, encoding, evidence, _twice_encoded(content))
     try:
         text = content.decode(encoding)
     except UnicodeDecodeError as error:
@@ -99,9 +103,8 @@ def _decoded(content: bytes, encoding: str, evidence: str, file_name: str) -> De
             "choose UTF-8, UTF-16 or Windows-1252."
         ) from error
     text = text.removeprefix("\ufeff")
-    remarks = _guess_remark(text) if encoding == "cp1252" else ()
     encoded = text.encode("utf-8", "replace")
-    return DecodedFile(encoded, encoding, evidence, remarks + _twice_encoded(encoded))
+    return DecodedFile(encoded, encoding, evidence, _twice_encoded(encoded))
 
 
 def _from_mark(content: bytes) -> tuple[str, str] | None:
@@ -140,21 +143,19 @@ def _is_utf8(content: bytes) -> bool:
 def _not_utf8(content: bytes, file_name: str) -> DecodedFile:
     escaped = content.decode("utf-8", "surrogateescape")
     lone = len(_LONE_BYTE.findall(escaped))
-    several = sum(1 for c in escaped if c > "\x7f") - lone
+    several = len(_NOT_ASCII.findall(escaped)) - lone
     if several * 10 > lone:
         return _mixed(escaped, file_name)
+    evidence = "The file is not valid UTF-8; Windows-1252 gives readable text."
     try:
-        return _decoded(
-            content,
-            "cp1252",
-            "The file is not valid UTF-8; Windows-1252 gives readable text.",
-            file_name,
-        )
+        decoded = _decoded(content, "cp1252", evidence, file_name)
     except FieldworkFileError as error:
         raise FieldworkFileError(
             f"{file_name} is neither UTF-8 nor Windows-1252 text: save it as UTF-8 and "
             "upload it again."
         ) from error
+    guess = _guess_remark(decoded.content[:_HEAD].decode("utf-8", "ignore"))
+    return replace(decoded, remarks=guess + decoded.remarks)
 
 
 def _mixed(escaped: str, file_name: str) -> DecodedFile:

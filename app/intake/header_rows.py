@@ -10,6 +10,7 @@ from app.intake.fieldwork_files import Remark, count_phrase, row_list, short
 from app.intake.reading import Reading
 
 _NUMBER = re.compile(r"\s*[-+−]?\d[\d.,'’   ]*%?\s*")
+_DIGIT = re.compile(r"[0-9]")
 _MOST_TITLE_LINES = 30
 _MOST_HEADER_ROWS = 3
 _ROWS_BELOW = 100
@@ -109,13 +110,11 @@ def _is_title(rows: list[Record], at: int, width: int) -> bool:
 def _count_header_rows(rows: list[list[str]]) -> int:
     if _holds_answers(rows[0]) and len(rows) > 1:
         return 0
-    count = 1
-    while count < min(_MOST_HEADER_ROWS, len(rows) - 1):
-        names, row, below = rows[0], rows[count], rows[count + 1 :]
-        if not _is_text_row(names, row, below):
-            break
-        count += 1
-    return count
+    for count in range(min(_MOST_HEADER_ROWS, len(rows) - 1), 1, -1):
+        below = rows[count:]
+        if all(_is_text_row(rows[0], row, below) for row in rows[1:count]):
+            return count
+    return 1
 
 
 def _holds_answers(row: list[str]) -> bool:
@@ -132,14 +131,31 @@ def _is_text_row(names: list[str], row: list[str], below: list[list[str]]) -> bo
     filled = {i: cell.strip() for i, cell in enumerate(row) if cell.strip()}
     if not filled or any(_NUMBER.fullmatch(cell) for cell in filled.values()):
         return False
-    if len(set(filled.values())) < 0.5 * len(filled):
+    if len(set(filled.values())) < 0.5 * len(filled) or _answers_alike(filled, below):
         return False
     numeric = _numeric_columns(below)
     if numeric:
         over_numbers = [filled[i] for i in numeric if i in filled]
-        sure = len(over_numbers) >= 2 or any(" " in cell for cell in over_numbers)
-        return sure and len(over_numbers) >= 0.5 * len(numeric)
+        return len(over_numbers) >= 0.5 * len(numeric) and _are_texts(over_numbers)
     return _reads_like_questions(names, filled, below)
+
+
+def _answers_alike(filled: dict[int, str], below: list[list[str]]) -> bool:
+    """Whether a cell occurs again below it, or has the digits of those below (R001, R002)."""
+    for i, cell in filled.items():
+        cells = [row[i].strip() for row in below if i < len(row) and row[i].strip()]
+        shapes = {_DIGIT.sub("0", other) for other in cells}
+        same_shape = len(shapes) == 1 and _DIGIT.sub("0", cell) in shapes and "0" in min(shapes)
+        if cell in cells or same_shape:
+            return True
+    return False
+
+
+def _are_texts(cells: list[str]) -> bool:
+    """Whether cells over columns of numbers are texts, not a refusal or two."""
+    if any("?" in cell or len(cell) >= 20 for cell in cells):
+        return True
+    return len(cells) >= 3 and len(set(cells)) >= 0.8 * len(cells)
 
 
 def _numeric_columns(below: list[list[str]]) -> list[int]:

@@ -95,6 +95,10 @@ class Reading:
         """Return what was decided about a column, or None."""
         return next((c for c in self.columns if c.column == name), None)
 
+    def for_another_file(self) -> Reading:
+        """Return what also holds for the next wave: decisions about columns and long rows."""
+        return Reading(long_rows=self.long_rows, columns=self.columns)
+
     def to_json(self) -> str:
         """Return the reading as JSON text."""
         return to_json(self)

@@ -2,9 +2,7 @@
 
 from __future__ import annotations
 
-import csv
 import hashlib
-import re
 from dataclasses import dataclass, replace
 from pathlib import Path
 
@@ -24,7 +22,7 @@ from app.intake.column_values import (
     profile_column,
     settle_form,
 )
-from app.intake.delimiters import Dialect, Record, find_dialect, records
+from app.intake.delimiters import Dialect
 from app.intake.encodings import DecodedFile, decode_file
 from app.intake.fieldwork_files import (
     FieldworkFile,
@@ -33,20 +31,12 @@ from app.intake.fieldwork_files import (
     SetAsideRow,
     name_list,
 )
-from app.intake.file_checks import check_bytes, check_not_binary, check_text, plain_name
-from app.intake.header_rows import HeaderRows, find_header
+from app.intake.file_checks import check_bytes, check_not_binary, plain_name
+from app.intake.header_rows import HeaderRows
+from app.intake.layouts import Layout, find_layout, offset_after
 from app.intake.number_forms import Form
 from app.intake.reading import Reading
 from app.intake.row_checks import footer_remarks, without_blank_rows, without_left_out
-from app.intake.whole_numbers import likely_whole
-
-MOST_COLUMNS = 20_000
-
-_LINE_END = re.compile(rb"\r\n|\n|\r")
-_SAMPLE = 256 << 10
-_LARGEST_SAMPLE = 16 << 20
-_SAMPLE_LINES = 40
-_WORTH_IT = 1 << 20  # bytes from which columns of whole numbers are parsed as such
 
 
 def read_fieldwork_file(

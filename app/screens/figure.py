@@ -21,7 +21,7 @@ file = layout.file_first(opened)
 data = opened.data()
 request = from_address(data)
 if request is None:
-    st.title("Figure")
+    st.title("Figure", anchor=False)
     layout.problem("No question of this file can be counted: look at the Questions screen.")
     st.page_link("screens/questions.py", label="Questions", query_params={"study": opened.study.id})
     st.stop()

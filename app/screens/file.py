@@ -34,7 +34,7 @@ if not address.read("study"):
     layout.dress()
     with st.container(horizontal=True, key="journey"):
         st.page_link("screens/studies.py", label="Studies")
-    st.title("New study")
+    st.title("New study", anchor=False)
     layout.say("Drop the file your fieldwork house sent: text with columns, such as .csv or .txt.")
     show_drop("", "Fieldwork file")
     st.stop()
@@ -42,7 +42,7 @@ if not address.read("study"):
 opened = layout.open_study()
 layout.dress()
 layout.journey("file", opened)
-st.title("Fieldwork file")
+st.title("Fieldwork file", anchor=False)
 layout.show_later_message()
 if opened.file is None:
     show_drop(opened.study.id, "Fieldwork file")

@@ -19,7 +19,7 @@ from app.widgets.plan_saving import PlanKeeper
 opened = layout.open_study()
 layout.dress()
 layout.journey("plan", opened)
-st.title("Sampling plan")
+st.title("Sampling plan", anchor=False)
 layout.show_later_message()
 layout.file_first(opened)
 data = opened.data()

@@ -12,7 +12,7 @@ from app.widgets.question_list import show_counts, show_filter, show_list
 opened = layout.open_study()
 layout.dress()
 layout.journey("questions", opened)
-st.title("Questions")
+st.title("Questions", anchor=False)
 layout.show_later_message()
 file = layout.file_first(opened)
 questions = opened.questions

@@ -24,7 +24,7 @@ def keep_mark() -> None:
 opened = layout.open_study()
 layout.dress()
 layout.journey("readouts", opened)
-st.title("Readout")
+st.title("Readout", anchor=False)
 layout.show_later_message()
 layout.file_first(opened)
 data = opened.data()

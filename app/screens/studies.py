@@ -25,7 +25,7 @@ def delete_study(summary: StudySummary) -> None:
 
 
 layout.dress()
-st.title("Studies")
+st.title("Studies", anchor=False)
 layout.show_later_message()
 try:
     summaries = database().studies()

@@ -253,3 +253,12 @@ def test_a_stricter_policy_of_the_page_stays_and_other_origins_may_not_read():
     assert reply.header("access-control-allow-origin") is None
     assert reply.header("x-frame-options") == "DENY"
     assert reply.header("content-type") == "text/html"
+
+
+@pytest.mark.parametrize(
+    ("length", "status"), [("2", 200), ("1024", 200), ("1025", 413), ("-1", 413)]
+)
+def test_taking_back_an_upload_may_send_a_few_bytes_along(length, status):
+    headers = [("host", HOST), ("content-length", length)]
+    assert put(UPLOAD, "DELETE", headers).status == status
+    assert put("/healthz", "GET", headers).status == 413

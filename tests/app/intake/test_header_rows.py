@@ -36,10 +36,15 @@ def test_texts_then_codes():
 
 
 def test_three_rows_keep_all_levels():
-    file = read(CODES + TEXTS + ",Service,Price\n" + ROWS)
+    texts = "Number,How good is each of these?,,,Where do you live?\n"
+    items = ",Service,Price,Opening hours,\n"
+    rows = "1,5,6,7,North\n2,7,8,9,South\n3,9,10,9,North\n"
+    file = read("ID,Q1_1,Q1_2,Q1_3,Q2\n" + texts + items + rows)
     assert file.reading.header_rows == 3
-    assert file.question_texts["Q1"] == "How satisfied are you? – Service"
-    assert file.question_texts["ID"] == "Respondent number"
+    assert file.question_texts["Q1_1"] == "How good is each of these? – Service"
+    assert file.question_texts["Q1_2"] == "Price"
+    assert file.question_texts["Q2"] == "Where do you live?"
+    assert file.answers["Q1_2"].tolist() == [6.0, 8.0, 10.0]
 
 
 def test_texts_over_labels_only():
@@ -55,6 +60,19 @@ def test_a_first_respondent_of_words_is_no_header():
     file = read("name,q1,q2\nAnn,refused,5\nBob,3,4\nCy,2,1\n")
     assert file.reading.header_rows == 1
     assert file.answers["q1"].tolist() == ["refused", "3", "2"]
+
+
+@pytest.mark.parametrize(
+    "rows",
+    [
+        "R001,refused,don't know,no\nR002,3,4,5\nR003,4,5,6\n",
+        "Ann,refused,don't know,refused\nBob,3,4,5\nCy,2,1,0\n",
+        "North,a lot of words here?,5,1\nNorth,3,4,1\nSouth,2,1,1\n",
+        "North,many words are standing here,yes,no\nNorth,3,4,1\nSouth,2,1,1\n",
+    ],
+)
+def test_a_respondent_is_never_taken_for_a_header(rows):
+    assert len(read("who,q1,q2,q3\n" + rows).answers) == 3
 
 
 def test_a_first_row_of_numbers_is_no_header():

@@ -38,12 +38,16 @@ def test_the_reading_found_gives_the_same_answers(path):
     pd.testing.assert_frame_equal(again.answers, first.answers)
     assert again.question_texts == first.question_texts
     assert again.fingerprint == first.fingerprint
-    assert [r.code for r in again.remarks if r.code != "encoding_guessed"] == [
-        r.code for r in first.remarks if r.code != "encoding_guessed"
-    ]
+    assert again.remarks == tuple(r for r in first.remarks if r.code != "encoding_guessed")
 
 
 def test_every_decision_is_filled_in():
     reading = read_fieldwork_file(b"a,b\n1,2\n2,3\n", file_name="s.csv").reading
     assert all(getattr(reading, name) is not None for name in Reading.__slots__)
     assert len(reading.evidence) >= 5
+
+
+def test_columns_carry_over_to_another_file_and_the_rest_is_found_again():
+    told = ColumnReading("Q1", "number", words=("refused",))
+    reading = Reading(encoding="cp1252", delimiter=";", left_out=(9,), columns=(told,))
+    assert reading.for_another_file() == Reading(columns=(told,))

@@ -6,7 +6,7 @@ import numpy as np
 import pandas as pd
 import pytest
 
-from app.intake import ColumnReading, Reading, cell_parsing, read_fieldwork_file, text_tables
+from app.intake import ColumnReading, Reading, cell_parsing, layouts, read_fieldwork_file
 from app.intake.delimiters import Record
 from app.intake.header_rows import HeaderRows
 from app.intake.whole_numbers import likely_whole
@@ -16,7 +16,7 @@ FIRST = [f"{i % 11},{i % 3},w{i}" for i in range(2_500)]
 
 @pytest.fixture(autouse=True)
 def small_files_too(monkeypatch):
-    monkeypatch.setattr(text_tables, "_WORTH_IT", 0)
+    monkeypatch.setattr(layouts, "WORTH_IT", 0)
 
 
 def both_ways(rows: list[str], monkeypatch, head: str = "a,b,c", **decided):
@@ -34,7 +34,7 @@ def both_ways(rows: list[str], monkeypatch, head: str = "a,b,c", **decided):
     monkeypatch.setattr(cell_parsing, "_columns", spy)
     quick = read_fieldwork_file(content, file_name="s.csv", reading=reading)
     used = any(tried)
-    monkeypatch.setattr(text_tables, "_WORTH_IT", 1 << 40)
+    monkeypatch.setattr(layouts, "WORTH_IT", 1 << 40)
     slow = read_fieldwork_file(content, file_name="s.csv", reading=reading)
     pd.testing.assert_frame_equal(quick.answers, slow.answers)
     assert quick.remarks == slow.remarks
