@@ -18,6 +18,10 @@ from estimators.sampling_distributions import (
     mean_distribution,
     total_distribution,
 )
+from estimators.stratified_distributions import (
+    stratified_mean_distribution,
+    stratified_total_distribution,
+)
 from estimators.universes import Universe, plug_in_universe
 
 METHODS_VERSION = 1
@@ -39,6 +43,8 @@ __all__ = [
     "proportion_interval",
     "quantile",
     "ratio",
+    "stratified_mean_distribution",
+    "stratified_total_distribution",
     "total",
     "total_distribution",
 ]

@@ -137,16 +137,17 @@ def _listed(parts: Sequence[Part]) -> SumLaw:
 
 def _on_the_lattice(parts: Sequence[Part], step: Fraction, points: int) -> SumLaw:
     """Convolution on the lattice all parts share."""
-    masses = []
+    masses: list[Floats] = []
     for part in parts:
         assert part.step is not None
         steps = np.rint((part.values - part.values[0]) / float(part.step)).astype(np.int64)
         places = steps * int(part.step / step)
-        masses.append(np.bincount(places, weights=part.probabilities))
+        masses.append(_mass(places, part.probabilities, int(places[-1]) + 1))
     probabilities = _convolved(masses, points)
     error = sum(part.error for part in parts) + _rounding(masses, points)
     first = math.fsum(float(part.values[0]) for part in parts)
-    return SumLaw(first + float(step) * np.arange(points), probabilities, True, error)
+    values = np.asarray(first + float(step) * np.arange(points), dtype=float)
+    return SumLaw(values, probabilities, True, error)
 
 
 def _on_a_grid(parts: Sequence[Part], most_points: int) -> SumLaw:
@@ -160,7 +161,7 @@ def _on_a_grid(parts: Sequence[Part], most_points: int) -> SumLaw:
     moved = probabilities - _convolved([one.unmoved for one in split], points)
     error = _error_of_moving(moved, sum(one.moves for one in split))
     error += sum(part.error * part.values.size + 2 * _TAIL for part in kept)
-    error += _rounding(masses, points) * math.sqrt(points)
+    error += _rounding(masses, points) * points
     places = np.flatnonzero(probabilities > _rounding(masses, points))
     inside = np.arange(places[0], places[-1] + 1)
     first = math.fsum(one.first for one in split)
@@ -198,10 +199,9 @@ class _Split:
         rest[rest <= _ON_POINT] = 0.0
         indices = (below - below[0]).astype(np.int64)
         size = int(indices[-1]) + 2
-        mass = np.bincount(indices, weights=part.probabilities * (1 - rest), minlength=size)
-        mass += np.bincount(indices + 1, weights=part.probabilities * rest, minlength=size)
-        stays = np.where(rest == 0, part.probabilities, 0.0)
-        unmoved = np.bincount(indices, weights=stays, minlength=size)
+        mass = _mass(indices, part.probabilities * (1 - rest), size)
+        mass += _mass(indices + 1, part.probabilities * rest, size)
+        unmoved = _mass(indices, np.where(rest == 0, part.probabilities, 0.0), size)
         return cls(likeliest + step * float(below[0]), mass, unmoved)
 
 
@@ -219,6 +219,10 @@ def _error_of_moving(moved: Floats, parts: int) -> float:
     before = np.concatenate(([0.0], np.cumsum(np.maximum(moved, 0.0))))
     window = min(window, moved.size)
     return float((before[window:] - before[:-window]).max()) + chance
+
+
+def _mass(places: Ints, probabilities: Floats, size: int) -> Floats:
+    return np.asarray(np.bincount(places, weights=probabilities, minlength=size), dtype=float)
 
 
 def _convolved(masses: Sequence[Floats], points: int) -> Floats:

@@ -11,7 +11,7 @@ import numpy as np
 
 from estimators.array_checks import as_count
 from estimators.errors import InputError
-from estimators.independent_sums import Part, SumLaw, sum_of_parts
+from estimators.independent_sums import Part, sum_of_parts
 from estimators.lattices import exact_lattice
 from estimators.sampling_distributions import SamplingDistribution, mean_distribution
 from estimators.universes import Universe
@@ -94,12 +94,20 @@ def stratified_total_distribution(
 ) -> SamplingDistribution:
     """Give the distribution of the estimated total: size of the universe x stratified mean.
 
-    Parameters and errors are those of :func:`stratified_mean_distribution`.
+    Parameters
+    ----------
+    universes, sample_sizes, replacement, most_points
+        As for :func:`stratified_mean_distribution`.
 
     Returns
     -------
     SamplingDistribution
         In the unit of the values, summed over the universe.
+
+    Raises
+    ------
+    InputError
+        As for :func:`stratified_mean_distribution`.
     """
     means = stratified_mean_distribution(
         universes, sample_sizes, replacement=replacement, most_points=most_points
