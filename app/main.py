@@ -1,4 +1,4 @@
-"""The entry script of the screens: import path, page set-up, list of screens; nothing else."""
+"""The entry script of the screens: import path, page set-up, list of screens, last resort."""
 
 import sys
 from pathlib import Path
@@ -9,8 +9,11 @@ sys.path[:] = [_ROOT, *(p for p in sys.path if p not in (_ROOT, str(Path(_ROOT) 
 
 import streamlit as st
 
+from app.intake import FieldworkFileError
 from app.settings import current
+from app.store import StoreError
 from app.widgets.cached_work import use_data_folder
+from app.widgets.layout import store_problem
 
 SCREENS = {
     "studies": "Studies",
@@ -38,4 +41,8 @@ pages = [
     )
     for name, title in SCREENS.items()
 ]
-st.navigation(pages, position="hidden").run()
+screen = st.navigation(pages, position="hidden")
+try:
+    screen.run()
+except (StoreError, FieldworkFileError) as error:
+    store_problem(error)

@@ -40,17 +40,26 @@ def as_count(number: object, name: str, *, least: int = 1) -> int:
 def as_numbers(values: ArrayLike, name: str, n: int) -> Floats:
     """Return one number per row; NaN is allowed here and judged by :func:`numbers_of_base`."""
     found = np.asarray(values)
-    texts = found.dtype.kind == "O" and any(isinstance(value, str) for value in found.flat)
     try:
-        if texts or found.dtype.kind not in "biufO":
+        if found.dtype.kind not in "biufO":
             raise TypeError
-        numbers = found.astype(np.float64, copy=False)
+        numbers = _of_objects(found) if found.dtype == object else found.astype(float, copy=False)
     except (TypeError, ValueError) as error:
         raise InputError(
             name, _kind(found), "must hold numbers only", "turn the answers into numbers first"
         ) from error
     _check_length(numbers, name, n)
     return numbers
+
+
+def _of_objects(found: NDArray[np.object_]) -> Floats:
+    """Numbers of any class, NaN for whatever marks a missing one; a text is no number."""
+    if any(isinstance(value, str) for value in found.flat):
+        raise TypeError
+    missing = [_is_missing(value) for value in found.flat]
+    filled = found.copy()
+    filled[np.array(missing, dtype=bool).reshape(found.shape)] = np.nan
+    return filled.astype(np.float64)
 
 
 def numbers_of_base(values: ArrayLike, name: str, n: int, base: Bools | None) -> Floats:
@@ -123,13 +132,21 @@ def as_weights(weights: ArrayLike, n: int | None = None) -> Floats:
 
 def as_labels(labels: ArrayLike, name: str, n: int | None = None) -> tuple[Codes, list[object]]:
     """Return (n,) codes and the label of each code; a missing label is refused."""
-    marks = np.asarray(labels)
+    marks = _as_marks(labels)
     _check_length(marks, name, np.size(marks) if n is None else n)
     _refuse_missing(marks, name)
     if marks.dtype == object:
         return _coded_objects(marks)
     kinds, codes = np.unique(marks, return_inverse=True)
     return codes.astype(np.intp, copy=False), kinds.tolist()
+
+
+def _as_marks(labels: ArrayLike) -> NDArray[Any]:
+    """Labels as an array; those of a list with texts among others stay what they are."""
+    marks = np.asarray(labels)
+    if marks.dtype.kind in "US" and isinstance(labels, list | tuple):
+        return np.array(labels, dtype=object)
+    return marks
 
 
 def as_counts_by_label(

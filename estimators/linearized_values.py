@@ -12,14 +12,14 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike
 
-from estimators.array_checks import Bools, Floats, as_mask
+from estimators.array_checks import Bools, Codes, Floats, as_mask
 from estimators.cautions import GROUP_WITHOUT_ANSWERS, answers_missing
 from estimators.design_counts import BaseCounts, count_base
 from estimators.design_variance import variance_of_sum
 from estimators.response_variance import variances_of_both_phases
 from estimators.results import Caution
 from estimators.sample_designs import SampleDesign
-from estimators.sampling_stages import counts_by
+from estimators.sampling_stages import counts_by, sums_by
 
 _SAME = 1e-12
 
@@ -65,8 +65,11 @@ class AnsweredBase:
 
     @property
     def follows_response(self) -> bool:
-        """Whether answers are missing and the weights follow from how many there are."""
-        return self.rows < self.asked and not self.design.weights_given
+        """Whether answers are missing and the rows of a response group all weigh the same.
+
+        The draw of the answers can then be told from the draw of the rows.
+        """
+        return self.rows < self.asked and _weighs_groups_alike(self.design)
 
     @property
     def universe_is_known(self) -> bool:
@@ -91,7 +94,8 @@ class AnsweredBase:
         notes = [*self.design.cautions, *self.counts.cautions]
         if self.rows < self.asked:
             notes.append(answers_missing(self.asked, self.rows))
-            if _groups_without_answers(self.design, self.where, self.inside):
+            asked, answered = _asked_and_answered(self.design, self.where, self.inside)
+            if ((asked > 0) & (answered == 0)).any():
                 notes.append(GROUP_WITHOUT_ANSWERS)
         return tuple(notes)
 
@@ -229,8 +233,7 @@ def _weights_of_answers(
         return weights, weights
     if inside is where:
         return np.where(inside, weights, 0.0), weights
-    if not design.weights_given:
-        weights = weights * _asked_per_answer(design, where, inside)
+    weights = weights * _asked_per_answer(design, where, inside)
     counted = np.where(inside, weights, 0.0)
     asked = design.weights.sum() if where is None else design.weights @ where
     if counted.any():
@@ -239,22 +242,43 @@ def _weights_of_answers(
 
 
 def _asked_per_answer(design: SampleDesign, where: Bools | None, inside: Bools) -> Floats:
-    """(n,) people asked for each answer, in the group within which response is random."""
+    """(n,) weight asked over weight that answered, in the group where response is random."""
     asked, answered = _asked_and_answered(design, where, inside)
-    return (asked / np.maximum(answered, 1))[design.stages.response_group]
-
-
-def _groups_without_answers(
-    design: SampleDesign, where: Bools | None, inside: Bools | None
-) -> bool:
-    """Whether a stratum or cluster has people in the base and no answer from any of them."""
-    asked, answered = _asked_and_answered(design, where, inside)
-    return bool(((asked > 0) & (answered == 0)).any())
+    ratio = np.divide(asked, answered, out=np.ones_like(asked), where=answered > 0)
+    return ratio[_response_group(design)]
 
 
 def _asked_and_answered(
     design: SampleDesign, where: Bools | None, inside: Bools | None
 ) -> tuple[Floats, Floats]:
-    """(G,) rows of each response group that the figure is about, and those that answered."""
-    group, size = design.stages.response_group, design.stages.response_groups
+    """(G,) what each response group has in the base, and what of it answered.
+
+    Counted in rows; in weights where rows of one group may weigh differently.
+    """
+    group = _response_group(design)
+    size = int(group.max()) + 1
+    if design.weights_given:
+        here, heard = (
+            design.weights if mask is None else design.weights * mask for mask in (where, inside)
+        )
+        return sums_by(group, here, size), sums_by(group, heard, size)
     return counts_by(group, where, size), counts_by(group, inside, size)
+
+
+def _response_group(design: SampleDesign) -> Codes:
+    """(n,) group within which not answering is a matter of chance.
+
+    The stratum, or the cluster where members were drawn from clusters by known numbers.
+    """
+    return design.stages.stratum if design.weights_given else design.stages.response_group
+
+
+def _weighs_groups_alike(design: SampleDesign) -> bool:
+    """Whether the rows of a response group all have the same weight."""
+    if not design.weights_given:
+        return True
+    stratum = design.stages.stratum
+    first = np.zeros(len(design.stages.units_drawn))
+    first[stratum] = design.weights
+    apart = np.abs(design.weights - first[stratum])
+    return design.stages.unit is None and bool((apart <= _SAME * design.weights).all())

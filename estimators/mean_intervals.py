@@ -64,7 +64,7 @@ def mean_interval(
     _check_answers(mean, standard_deviation, answers)
     fraction = sampling_fraction(answers, population_size, replacement=replacement)
     half = _half_width(standard_deviation, answers, fraction, level)
-    return Interval(mean - half, mean + half, level, "t")
+    return Interval(float(mean) - half, float(mean) + half, level, "t")
 
 
 def _half_width(deviation: float, n: int, fraction: float, confidence: float) -> float:
@@ -74,7 +74,7 @@ def _half_width(deviation: float, n: int, fraction: float, confidence: float) ->
     if n == 1:
         return math.inf
     quantile = float(special.stdtrit(n - 1, (1 + confidence) / 2))
-    return quantile * deviation * math.sqrt((1 - fraction) / n)
+    return quantile * float(deviation) * math.sqrt((1 - fraction) / n)
 
 
 def _check_answers(mean: float, deviation: float, n: int) -> None:

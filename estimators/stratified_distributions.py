@@ -17,7 +17,8 @@ from estimators.sampling_distributions import SamplingDistribution, mean_distrib
 from estimators.universes import Universe
 
 _MOST_POINTS = 200_000
-_FEW_VALUES = 32  # with so few, a stratum is quick however many sums it has
+_WORK = 2  # values x possible sums of all strata together, over most_points
+_FEWEST_STEPS = 64  # over the range of the values of a stratum, at least
 
 
 def stratified_mean_distribution(
@@ -38,7 +39,9 @@ def stratified_mean_distribution(
     replacement : bool
         Whether a unit could be drawn more than once.
     most_points : int
-        Possible sums to tell apart; where there are more, they are moved to a grid.
+        Possible sums to tell apart; where there are more, they are moved to a grid. The sums of a
+        single stratum are limited too, the more its values differ, but to no fewer than 64 steps
+        from its smallest value to the largest.
 
     Returns
     -------
@@ -148,13 +151,9 @@ class _Stratum:
 def _stratum(
     universe: Universe, n: int, strata: int, *, replacement: bool, most_points: int
 ) -> _Stratum:
-    few = universe.values.size <= _FEW_VALUES
-    law = mean_distribution(
-        universe,
-        n,
-        replacement=replacement,
-        most_points=most_points if few else max(1, most_points // strata),
-    )
+    quick = _WORK * most_points // (strata * universe.values.size)
+    points = max(min(quick, most_points), _FEWEST_STEPS * n + 1)
+    law = mean_distribution(universe, n, replacement=replacement, most_points=points)
     return _Stratum(law, universe.size, _step_of_means(universe, n, law))
 
 
@@ -200,7 +199,7 @@ def _skewness(
 ) -> float:
     """Third central moments of independent parts add up."""
     pairs = zip(laws, spreads, strict=True)
-    third = math.fsum(law.skewness * s**3 for law, s in pairs if s > 0)
+    third = math.fsum(law.skewness * s**3 for law, s in pairs if not math.isnan(law.skewness))
     return third / spread**3
 
 

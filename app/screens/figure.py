@@ -13,8 +13,8 @@ from app.widgets.figure_pickers import show_pickers
 from app.widgets.figure_rails import show_rails
 from app.widgets.keeping import show_keep
 
-opened = layout.open_study()
 layout.dress()
+opened = layout.open_study()
 layout.journey("figure", opened)
 layout.show_later_message()
 file = layout.file_first(opened)

@@ -30,8 +30,8 @@ def show_drop(study_id: str, label: str) -> None:
     st.rerun()
 
 
+layout.dress()
 if not address.read("study"):
-    layout.dress()
     with st.container(horizontal=True, key="journey"):
         st.page_link("screens/studies.py", label="Studies")
     st.title("New study", anchor=False)
@@ -40,7 +40,6 @@ if not address.read("study"):
     st.stop()
 
 opened = layout.open_study()
-layout.dress()
 layout.journey("file", opened)
 st.title("Fieldwork file", anchor=False)
 layout.show_later_message()

@@ -16,8 +16,8 @@ from app.widgets.plan_form import (
 )
 from app.widgets.plan_saving import PlanKeeper
 
-opened = layout.open_study()
 layout.dress()
+opened = layout.open_study()
 layout.journey("plan", opened)
 st.title("Sampling plan", anchor=False)
 layout.show_later_message()

@@ -9,8 +9,8 @@ from app.widgets.question_card import show_question
 from app.widgets.question_form import show_form
 from app.widgets.question_list import show_counts, show_filter, show_list
 
-opened = layout.open_study()
 layout.dress()
+opened = layout.open_study()
 layout.journey("questions", opened)
 st.title("Questions", anchor=False)
 layout.show_later_message()

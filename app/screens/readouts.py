@@ -21,8 +21,8 @@ def keep_mark() -> None:
         layout.later(error.sentence)
 
 
-opened = layout.open_study()
 layout.dress()
+opened = layout.open_study()
 layout.journey("readouts", opened)
 st.title("Readout", anchor=False)
 layout.show_later_message()

@@ -145,7 +145,8 @@ def _rows(data: StudyData, figure: Figure) -> tuple[FigureRow, ...]:
 def _column_head(figure: Figure, rows: tuple[FigureRow, ...]) -> str:
     if figure.scale.share:
         return "%"
-    unit = next((row.words.unit for row in rows if row.words is not None), "")
+    units = {row.words.unit for row in rows if row.words is not None}
+    unit = units.pop() if len(units) == 1 else ""  # mixed ones stand in the cells
     noun = {Statistic.TOTAL: "total", Statistic.MEDIAN: "median"}.get(
         figure.request.statistic, "average"
     )

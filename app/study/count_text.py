@@ -5,7 +5,9 @@ from __future__ import annotations
 import re
 
 _SPACES = "\u0020\u00a0\u202f\u2009"
-_GROUPED = re.compile(r"\d{1,3}(?:([.,'\u2019 ])\d{3})(?:\1\d{3})*")
+_MOST_DIGITS = 11
+_PLAIN = re.compile(r"[0-9]+")
+_GROUPED = re.compile(r"[0-9]{1,3}(?:([.,'\u2019 ])[0-9]{3})(?:\1[0-9]{3})*")
 
 
 def read_count(text: str, name: str) -> int | None:
@@ -26,14 +28,12 @@ def read_count(text: str, name: str) -> int | None:
     plain = text.strip().translate(dict.fromkeys(map(ord, _SPACES), " "))
     if not plain:
         return None
-    if plain.isascii() and plain.isdigit():
-        number = int(plain)
-    elif _GROUPED.fullmatch(plain):
-        number = int(re.sub(r"\D", "", plain))
-    else:
+    if not (_PLAIN.fullmatch(plain) or _GROUPED.fullmatch(plain)):
         raise ValueError(
-            f"{name}: \u201c{text.strip()}\u201d is no whole number; type it like 1184 or 1,184."
+            f"{name}: \u201c{text.strip()[:40]}\u201d is no whole number; type it like 1184 or 1,184."
         )
+    digits = re.sub(r"\D", "", plain).lstrip("0")
+    number = int(digits or "0") if len(digits) <= _MOST_DIGITS else 10**_MOST_DIGITS
     if not 1 <= number <= 10**10:
         raise ValueError(f"{name}: it must be at least 1 and at most ten billion.")
     return number

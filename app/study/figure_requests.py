@@ -26,7 +26,7 @@ class FigureRequest:
     statistic : Statistic
         What is estimated.
     answers : tuple of str
-        Codes counted together; shares only.
+        Codes counted together; for shares, and totals of people.
     group_question, group_answer : str
         Who the figure is about: an answer of another question; "" for everyone.
     confidence : float
@@ -34,7 +34,7 @@ class FigureRequest:
     method : str
         Interval method of a share.
     missing_counted : bool
-        True when "don't know" and "refused" stay in the base of a share.
+        True when "don't know" and "refused" stay in the base where people are counted.
     split_by : str
         Key of the question whose groups stand in the rows under the figure; "" for none.
     """
@@ -48,3 +48,10 @@ class FigureRequest:
     method: str = "wilson"
     missing_counted: bool = False
     split_by: str = ""
+
+    @property
+    def counts_people(self) -> bool:
+        """Whether it counts who chose an answer: a share, or how many that are in all."""
+        if self.statistic is Statistic.SHARE:
+            return True
+        return self.statistic is Statistic.TOTAL and bool(self.answers)

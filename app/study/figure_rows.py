@@ -99,9 +99,23 @@ def figure_rows(
     widths = [f.estimate.half_width * factor for f in figures]
     step = column_step(widths, share=share)
     ends = _axis(figures)
+    return _in_one_unit(
+        tuple(
+            _row(data, request, figure, reason, step, ends, by_answer)
+            for request, figure, reason in computed
+        )
+    )
+
+
+def _in_one_unit(rows: tuple[FigureRow, ...]) -> tuple[FigureRow, ...]:
+    """Write the unit into the cells where one head cannot speak for the whole column."""
+    if len({row.words.unit for row in rows if row.words is not None}) < 2:
+        return rows
     return tuple(
-        _row(data, request, figure, reason, step, ends, by_answer)
-        for request, figure, reason in computed
+        replace(row, value=row.words.full)
+        if row.words is not None and row.value == row.words.value
+        else row
+        for row in rows
     )
 
 

@@ -2,19 +2,23 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
 import numpy.typing as npt
 
 from app.study.figure_requests import FigureRequest, Statistic
+from app.study.figure_scales import scale_of
 from app.study.question_values import QuestionValues, read_values
 from app.study.questions import MissingReason, Question, QuestionKind
+from app.study.sampling_plan import SamplingMethod
 from app.study.study_data import StudyData
 from app.study.width_check import FigureScale, Verdict, judge
 from estimators import Estimate, InputError, SampleDesign, mean, proportion, quantile, total
 
 BoolArray = npt.NDArray[np.bool_]
+ReadValues = Callable[[Question], QuestionValues]
 
 
 class FigureError(ValueError):
@@ -68,6 +72,8 @@ class Figure:
         Of the width check.
     numbers : ndarray
         (k,) float, the answers behind it (0 and 1 for a share); read only.
+    base : ndarray
+        (n,) bool, the k rows they stand in; read only.
     """
 
     request: FigureRequest
@@ -79,9 +85,12 @@ class Figure:
     scale: FigureScale
     verdict: Verdict
     numbers: npt.NDArray[np.float64]
+    base: BoolArray
 
 
-def compute_figure(data: StudyData, request: FigureRequest) -> Figure:
+def compute_figure(
+    data: StudyData, request: FigureRequest, *, read: ReadValues | None = None
+) -> Figure:
     """Compute one figure.
 
     Parameters
@@ -90,6 +99,8 @@ def compute_figure(data: StudyData, request: FigureRequest) -> Figure:
         The study ready to compute with.
     request : FigureRequest
         What is asked for.
+    read : callable, optional
+        Gives the answers to a question; for those who compute many figures of the same ones.
 
     Raises
     ------
@@ -97,17 +108,24 @@ def compute_figure(data: StudyData, request: FigureRequest) -> Figure:
         When the question is gone, nobody answered, or the plan cannot give this figure.
     """
     question = _usable_question(data, request.question)
-    values = read_values(question, data.answers)
-    group, inside = _group(data, request)
+    _check_request(question, request)
+    read = read or reader(data)
+    values = read(question)
+    group, inside = _group(data, request, read)
     where = inside & values.asked
     answered, numbers = _answers(values, request)
-    if not (answered & where).any():
+    base = answered & where
+    if not base.any():
         raise FigureError(f"Nobody in this group answered {question.text}: choose another group.")
-    estimate = _estimate(data.built.design, numbers, where, answered, request)
-    endless = _estimate(data.built.design.without_correction(), numbers, where, answered, request)
-    scale = _scale(question, request, numbers[answered & where], estimate)
-    kept = numbers[answered & where]
-    kept.setflags(write=False)
+    try:
+        estimate = _estimate(data.built.design, numbers, where, answered, request)
+        endless = _estimate(data.built.endless, numbers, where, answered, request)
+    except InputError as error:
+        raise FigureError(_in_plain_words(data, request, error)) from error
+    kept = numbers[base]
+    for array in (kept, base):
+        array.setflags(write=False)
+    scale = scale_of(question, request, kept, estimate)
     return Figure(
         request,
         question,
@@ -118,15 +136,28 @@ def compute_figure(data: StudyData, request: FigureRequest) -> Figure:
         scale,
         judge(estimate, scale, data.study.limit, decimal_mark=data.study.decimal_mark),
         kept,
+        base,
     )
+
+
+def reader(data: StudyData) -> ReadValues:
+    """Return what gives the answers to a question, each read once."""
+    known: dict[str, QuestionValues] = {}
+
+    def read(question: Question) -> QuestionValues:
+        if question.key not in known:
+            known[question.key] = read_values(question, data.answers)
+        return known[question.key]
+
+    return read
 
 
 def default_request(question: Question) -> FigureRequest:
     """Return the figure a question opens with: an average, or the share of its first answer."""
     if question.kind in (QuestionKind.SCALE, QuestionKind.NUMBER):
         return FigureRequest(question.key, Statistic.AVERAGE)
-    first = question.answers[0].code if question.answers else ""
-    return FigureRequest(question.key, Statistic.SHARE, (first,))
+    first = tuple(answer.code for answer in question.answers[:1])
+    return FigureRequest(question.key, Statistic.SHARE, first)
 
 
 def statistics_of(question: Question) -> tuple[Statistic, ...]:
@@ -150,11 +181,36 @@ def _usable_question(data: StudyData, key: str) -> Question:
     return question
 
 
-def _group(data: StudyData, request: FigureRequest) -> tuple[Question | None, BoolArray]:
+def _check_request(question: Question, request: FigureRequest) -> None:
+    """Refuse what the question cannot give, such as an average of brands."""
+    if request.statistic not in statistics_of(question):
+        names = " or ".join(statistic.value for statistic in statistics_of(question))
+        raise FigureError(f"{question.text} has no {request.statistic.value}: choose {names}.")
+    if not takes_answers(question, request.statistic):
+        return
+    if not question.answers:
+        raise FigureError(
+            f"{question.text} has no answers to choose from: type them on the Questions screen."
+        )
+    if not request.answers:
+        raise FigureError(f"{question.text}: choose the answer to count.")
+
+
+def takes_answers(question: Question, statistic: Statistic) -> bool:
+    """Return whether a figure counts people who gave an answer."""
+    if statistic is Statistic.SHARE:
+        return True
+    kinds = (QuestionKind.CHOICE, QuestionKind.SEVERAL)
+    return statistic is Statistic.TOTAL and question.kind in kinds
+
+
+def _group(
+    data: StudyData, request: FigureRequest, read: ReadValues
+) -> tuple[Question | None, BoolArray]:
     if not request.group_question:
         return None, np.ones(len(data.answers), dtype=bool)
     question = _usable_question(data, request.group_question)
-    return question, members(read_values(question, data.answers), question, request.group_answer)
+    return question, members(read(question), question, request.group_answer)
 
 
 def members(values: QuestionValues, question: Question, code: str) -> BoolArray:
@@ -178,7 +234,7 @@ def _answers(
     values: QuestionValues, request: FigureRequest
 ) -> tuple[BoolArray, npt.NDArray[np.float64]]:
     """Return who answered, and the numbers to estimate from: (n,) bool and (n,) float."""
-    if not _counts_people(request):
+    if not request.counts_people:
         return np.asarray(values.answered), np.array(values.numbers, dtype=np.float64)
     chosen = _chosen(values, request)
     answered = np.asarray(values.answered).copy()
@@ -188,16 +244,11 @@ def _answers(
     return answered, np.asarray(chosen & values.answered, dtype=np.float64)
 
 
-def _counts_people(request: FigureRequest) -> bool:
-    """Whether the figure counts who chose an answer: a share, or how many that are in all."""
-    return request.statistic is Statistic.SHARE or bool(request.answers)
-
-
 def _chosen(values: QuestionValues, request: FigureRequest) -> BoolArray:
     question = values.question
     positions = [i for i, a in enumerate(question.answers) if a.code in request.answers]
-    if len(positions) < len(request.answers):
-        gone = set(request.answers) - {a.code for a in question.answers}
+    gone = set(request.answers) - {a.code for a in question.answers}
+    if gone:
         raise FigureError(f"{question.text} has no answer {sorted(gone)[0]}: choose another.")
     if question.kind is QuestionKind.SEVERAL:
         return np.asarray(values.chosen[:, positions].any(axis=1), dtype=bool)
@@ -212,62 +263,34 @@ def _estimate(
     request: FigureRequest,
 ) -> Estimate:
     confidence = request.confidence
-    try:
-        if request.statistic is Statistic.SHARE:
-            return proportion(
-                numbers > 0,
-                design,
-                where=where,
-                answered=answered,
-                confidence=confidence,
-                method=request.method,
-            )
-        if request.statistic is Statistic.MEDIAN:
-            return quantile(
-                numbers, 0.5, design, where=where, answered=answered, confidence=confidence
-            )
-        function = total if request.statistic is Statistic.TOTAL else mean
-        return function(numbers, design, where=where, answered=answered, confidence=confidence)
-    except InputError as error:
-        raise FigureError(_in_plain_words(request, error)) from error
-
-
-def _in_plain_words(request: FigureRequest, error: InputError) -> str:
-    if request.statistic is Statistic.TOTAL:
-        return "A total needs the size of the universe: type it in the sampling plan."
-    return f"This figure cannot be given: {error}"
-
-
-def _scale(
-    question: Question,
-    request: FigureRequest,
-    numbers: npt.NDArray[np.float64],
-    estimate: Estimate,
-) -> FigureScale:
     if request.statistic is Statistic.SHARE:
-        return FigureScale(True, 0.0, 1.0, natural_zero=True, scale_answers=False)
-    if question.kind is QuestionKind.SCALE and not request.answers:
-        low, high = scale_ends(question, numbers)
-        return FigureScale(False, low, high, natural_zero=False, scale_answers=True)
-    top = estimate.interval.high if np.isfinite(estimate.interval.high) else estimate.value * 2
-    positive = bool((numbers >= 0).all())
-    low = 0.0 if positive else min(estimate.interval.low, estimate.value)
-    return FigureScale(False, low, max(top, estimate.value) * 1.25, positive, scale_answers=False)
+        return proportion(
+            numbers > 0,
+            design,
+            where=where,
+            answered=answered,
+            confidence=confidence,
+            method=request.method,
+        )
+    if request.statistic is Statistic.MEDIAN:
+        return quantile(numbers, 0.5, design, where=where, answered=answered, confidence=confidence)
+    function = total if request.statistic is Statistic.TOTAL else mean
+    return function(numbers, design, where=where, answered=answered, confidence=confidence)
 
 
-def scale_ends(question: Question, numbers: npt.NDArray[np.float64]) -> tuple[float, float]:
-    """Return the lowest and highest point of a scale."""
-    codes = [float(a.code) for a in question.answers if _is_number(a.code)]
-    points = codes or [float(numbers.min()), float(numbers.max())]
-    return min(points), max(points)
-
-
-def _is_number(code: str) -> bool:
-    try:
-        float(code)
-    except ValueError:
-        return False
-    return True
+def _in_plain_words(data: StudyData, request: FigureRequest, error: InputError) -> str:
+    if request.statistic is not Statistic.TOTAL or error.argument != "design":
+        return f"This figure cannot be given: {error}"
+    if data.built.fallback:
+        return "A total needs a sampling plan that fits the file: mend the plan first."
+    if data.plan.method is SamplingMethod.NOT_SURE:
+        return "A total needs to know how people got in: choose a method in the sampling plan."
+    if data.plan.method is SamplingMethod.QUOTA:
+        return (
+            "Quotas and online panels give a total only with weights that add up to the universe: "
+            "name such a column in the sampling plan, or show a share or an average."
+        )
+    return "A total needs the size of the universe: type it in the sampling plan."
 
 
 def _counts(
@@ -284,5 +307,5 @@ def _counts(
         if count:
             reasons.append((reason.value, count))
     base = answered & where
-    chosen = int((numbers[base] > 0).sum()) if _counts_people(request) else 0
+    chosen = int((numbers[base] > 0).sum()) if request.counts_people else 0
     return BaseCounts(int(inside.sum()), int(where.sum()), int(base.sum()), chosen, tuple(reasons))

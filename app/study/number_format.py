@@ -5,13 +5,15 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass
-from decimal import ROUND_HALF_UP, Decimal
+from decimal import MAX_EMAX, MIN_EMIN, ROUND_HALF_UP, Context, Decimal
 from statistics import median
 
 MINUS = "\u2212"
 NO_BREAK = "\u00a0"
 SHARE_STEP_FLOOR = 0.1  # shares are never written finer than a tenth of a point
 _WORDS = ((10**9, "billion"), (10**6, "million"))
+_EXACT = Context(prec=800, rounding=ROUND_HALF_UP, Emax=MAX_EMAX, Emin=MIN_EMIN)  # any two floats
+_NEAR = Decimal("1e-9")  # points of a share that are rounding noise
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,8 +58,7 @@ def step_for(half_width: float, *, share: bool, value: float = 0.0) -> float:
     """
     if not math.isfinite(half_width) or half_width <= 0:
         return _step_without_width(value, share=share)
-    exponent = math.floor(math.log10(half_width / 2) + 1e-12)
-    step = float(10.0**exponent)
+    step = _power_of_ten(math.floor(math.log10(half_width) - math.log10(2) + 1e-12))
     return max(step, SHARE_STEP_FLOOR) if share else step
 
 
@@ -67,13 +68,31 @@ def _step_without_width(value: float, *, share: bool) -> float:
         return SHARE_STEP_FLOOR
     if not math.isfinite(value) or value == round(value):
         return 1.0
-    return float(10.0 ** (math.floor(math.log10(abs(value))) - 3))
+    return _power_of_ten(math.floor(math.log10(abs(value))) - 3)
 
 
-def column_step(half_widths: Iterable[float], *, share: bool) -> float:
-    """Return the one step of a table column: that of its median half-width."""
+def _power_of_ten(exponent: int) -> float:
+    """Return the float nearest to a power of ten; no float is finer than 1e-323."""
+    return float(f"1e{max(exponent, -323)}")
+
+
+def column_step(
+    half_widths: Iterable[float], *, share: bool, values: Iterable[float] = ()
+) -> float:
+    """Return the one step of a table column: that of its median half-width.
+
+    Parameters
+    ----------
+    half_widths, values : iterable of float
+        In the unit printed: points for a share. The values matter where nothing has a width.
+    share : bool
+        Shares are never finer than 0.1.
+    """
     widths = [w for w in half_widths if math.isfinite(w) and w > 0]
-    return step_for(median(widths), share=share) if widths else (0.1 if share else 1.0)
+    if widths:
+        return step_for(median(widths), share=share)
+    uneven = [abs(v) for v in values if math.isfinite(v) and v != round(v)]
+    return _step_without_width(max(uneven, default=0.0), share=share)
 
 
 def figure_words(
@@ -98,10 +117,11 @@ def figure_words(
     step : float, optional
         The step of the column or figure it stands beside; else its own.
     """
-    numbers = [_decimal(x) * (100 if share else 1) for x in (value, low, high)]
+    factor = Decimal(100 if share else 1)
+    numbers = [_EXACT.multiply(_decimal(x), factor) for x in (value, low, high)]
     if step is None:
-        step = step_for(float(numbers[2] - numbers[1]) / 2, share=share, value=float(numbers[0]))
-    scale, unit = (1, "%") if share else _scale_word(float(numbers[0]), step)
+        step = step_for(_half_width(numbers), share=share, value=float(numbers[0]))
+    scale, unit = (1, "%") if share else _scale_word(numbers[0], step)
     texts = [_written(x, step, scale, decimal_mark, share=share) for x in numbers]
     tail = f"{NO_BREAK}{unit}" if unit else ""
     return FigureWords(
@@ -116,7 +136,7 @@ def figure_words(
 
 def write_count(count: float, decimal_mark: str = ".") -> str:
     """Write a whole number with thousands separated: "1,184"."""
-    return _grouped(f"{round(count):d}", decimal_mark)
+    return _grouped(f"{round(count):d}", decimal_mark) if math.isfinite(count) else "unknown"
 
 
 def write_number(value: float, step: float, decimal_mark: str = ".") -> str:
@@ -124,9 +144,19 @@ def write_number(value: float, step: float, decimal_mark: str = ".") -> str:
     return _written(_decimal(value), step, 1, decimal_mark, share=False)
 
 
+def write_amount(value: float, step: float, decimal_mark: str = ".") -> str:
+    """Write a number rounded to a step, large ones in words as a figure is: "2.1 million"."""
+    number = _decimal(value)
+    scale, unit = _scale_word(number, step)
+    text = _written(number, step, scale, decimal_mark, share=False)
+    return f"{text}{NO_BREAK}{unit}" if unit else text
+
+
 def write_plain(value: float, decimal_mark: str = ".") -> str:
     """Write a number as it stands in a file: no rounding, no thousands ("2.5", "10")."""
-    text = str(int(value)) if value == int(value) else repr(float(value))
+    if not math.isfinite(value):
+        return "unknown"
+    text = str(int(value)) if value == int(value) else f"{_decimal(value):f}"
     return text.replace(".", decimal_mark).replace("-", MINUS)
 
 
@@ -134,7 +164,8 @@ def write_about(value: float, decimal_mark: str = ".") -> str:
     """Write a number to three figures, for sentences that only compare sizes."""
     if value == 0 or not math.isfinite(value):
         return "0" if value == 0 else "unknown"
-    return write_number(value, 10.0 ** (math.floor(math.log10(abs(value))) - 2), decimal_mark)
+    step = _power_of_ten(math.floor(math.log10(abs(value))) - 2)
+    return write_number(value, step, decimal_mark)
 
 
 def write_share(part: float, decimal_mark: str = ".") -> str:
@@ -147,16 +178,31 @@ def _decimal(value: float) -> Decimal:
     return Decimal(repr(float(value)))
 
 
-def _scale_word(value: float, step: float) -> tuple[int, str]:
+def _half_width(numbers: list[Decimal]) -> float:
+    """Return half of high minus low; infinite or not a number where an end is."""
+    low, high = float(numbers[1]), float(numbers[2])
+    if not (math.isfinite(low) and math.isfinite(high)):
+        return math.inf
+    return float(_EXACT.subtract(numbers[2], numbers[1])) / 2
+
+
+def _scale_word(value: Decimal, step: float) -> tuple[int, str]:
+    """Return the word a number is written with, told by the number as it is rounded."""
+    if not value.is_finite():
+        return 1, ""
+    rounded = abs(_rounded(value, step))
     for scale, word in _WORDS:
-        if abs(value) >= scale and step >= scale / 100:
+        if rounded >= scale and step >= scale / 100:
             return scale, word
     return 1, ""
 
 
 def _rounded(value: Decimal, step: float) -> Decimal:
-    unit = Decimal(repr(step)) if step < 1 else Decimal(round(step))
-    return (value / unit).quantize(Decimal(1), rounding=ROUND_HALF_UP) * unit
+    if not value.is_finite():
+        return value
+    unit = _decimal(step)
+    whole = _EXACT.divide(value, unit).to_integral_value(ROUND_HALF_UP, _EXACT)
+    return _EXACT.multiply(whole, unit)
 
 
 def _written(value: Decimal, step: float, scale: int, decimal_mark: str, *, share: bool) -> str:
@@ -166,16 +212,18 @@ def _written(value: Decimal, step: float, scale: int, decimal_mark: str, *, shar
     if share and (edge := _edge_words(value, rounded, step, decimal_mark)):
         return edge
     places = max(0, -round(math.log10(step / scale)))
-    return _signed(f"{rounded / scale:.{places}f}", decimal_mark)
+    exact = _EXACT.divide(rounded, Decimal(scale))
+    return _signed(f"{exact:.{places}f}", decimal_mark)
 
 
 def _edge_words(value: Decimal, rounded: Decimal, step: float, decimal_mark: str) -> str:
     """Words where rounding would claim nobody or everybody: "under 1", "over 99"."""
     places = max(0, -round(math.log10(step)))
-    if rounded == 0 and value > Decimal("1e-9"):
-        return "under " + _signed(f"{Decimal(repr(step)):.{places}f}", decimal_mark)
-    if rounded == 100 and value < 100 - Decimal("1e-9"):
-        return "over " + _signed(f"{100 - Decimal(repr(step)):.{places}f}", decimal_mark)
+    unit = _decimal(step)
+    if rounded <= 0 < value - _NEAR:
+        return "under " + _signed(f"{unit:.{places}f}", decimal_mark)
+    if rounded >= 100 > value + _NEAR:
+        return "over " + _signed(f"{100 - unit:.{places}f}", decimal_mark)
     return ""
 
 
@@ -200,9 +248,10 @@ def _between(low: str, high: str, numbers: list[Decimal], tail: str) -> str:
 
 def _plus_minus(numbers: list[Decimal], step: float, scale: int, decimal_mark: str) -> str:
     value, low, high = numbers
-    if not (low.is_finite() and high.is_finite()):
+    if not all(number.is_finite() for number in numbers):
         return ""
-    below, above = _rounded(value - low, step), _rounded(high - value, step)
+    below = _rounded(_EXACT.subtract(value, low), step)
+    above = _rounded(_EXACT.subtract(high, value), step)
     if below != above or above == 0:
         return ""
     return "±" + _written(above, step, scale, decimal_mark, share=False)

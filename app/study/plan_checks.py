@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 
@@ -45,6 +46,11 @@ def check_plan(plan: SamplingPlan, answers: pd.DataFrame) -> tuple[PlanProblem, 
     return tuple(problem for check in checks for problem in check(plan, answers))
 
 
+def draws_repeat(plan: SamplingPlan) -> bool:
+    """Return whether a unit could be drawn twice; a switch left over from another method is not."""
+    return plan.replacement and plan.method is SamplingMethod.CHANCE
+
+
 def universe_from_strata(plan: SamplingPlan) -> int | None:
     """Return the sum of the stratum counts, or None while one of them is unknown."""
     sizes = [s.population_size for s in plan.strata]
@@ -75,16 +81,19 @@ def label_texts(column: pd.Series) -> pd.Series:
 
 
 def _number_label(value: float) -> str:
-    return str(int(value)) if value == int(value) else repr(float(value))
+    whole = math.isfinite(value) and value == int(value)
+    return str(int(value)) if whole else repr(float(value))
 
 
 def _universe_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
     size, rows = plan.universe_size, len(answers)
-    if size is not None and size < rows and not plan.replacement:
+    if size is not None and size < rows and not draws_repeat(plan):
+        twice = plan.method is SamplingMethod.CHANCE
         yield PlanProblem(
             "universe_size",
             f"The file has {write_count(rows)} answers but the universe only "
-            f"{write_count(size)}: correct the universe, or say that each could be drawn twice.",
+            f"{write_count(size)}: correct the universe"
+            + (", or say that each could be drawn twice." if twice else "."),
         )
     total = universe_from_strata(plan)
     if size is not None and total is not None and total != size:
@@ -110,13 +119,23 @@ def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Plan
     sizes = {s.label: s.population_size for s in plan.strata}
     for label, rows in asked.items():
         yield from _stratum_problem(label, rows, sizes.get(label), plan)
-    for label, population in sizes.items():
-        if label not in asked and population:
-            yield PlanProblem(
-                "strata",
-                f"{label}: {write_count(population)} in the universe but no answer in the file: "
-                "merge it with another stratum or take it out.",
-            )
+    for label in sizes.keys() - asked.keys():
+        yield from _empty_stratum_problem(label, sizes[label])
+
+
+def _empty_stratum_problem(label: str, size: int | None) -> Iterator[PlanProblem]:
+    if size is None:
+        yield PlanProblem(
+            "strata",
+            f"{label}: neither an answer in the file nor a universe count: take it out.",
+            blocks=False,
+        )
+    elif size:
+        yield PlanProblem(
+            "strata",
+            f"{label}: {write_count(size)} in the universe but no answer in the file: "
+            "merge it with another stratum or take it out.",
+        )
 
 
 def _sizes_are_needed(plan: SamplingPlan) -> bool:
@@ -144,7 +163,7 @@ def _stratum_problem(
             f"{label}: {write_count(rows)} answers but no universe count: "
             "type it or merge the stratum.",
         )
-    elif size < rows and not plan.replacement:
+    elif size < rows and not draws_repeat(plan):
         yield PlanProblem(
             "strata",
             f"{label}: {write_count(rows)} answers but only {write_count(size)} in the universe: "
@@ -165,7 +184,7 @@ def _weight_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Plan
         rows = ", ".join(str(i + 1) for i in bad[:5]) + (" ..." if bad.size > 5 else "")
         yield PlanProblem(
             "weights_column",
-            f"{write_count(bad.size)} weights in {column} are missing, zero or negative "
+            f"{write_count(bad.size)} weights in {column} are missing, no number, zero or negative "
             f"(answers {rows}): mend them in the file, or choose another column.",
         )
 
@@ -174,20 +193,60 @@ def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Pla
     if plan.method is not SamplingMethod.GROUPS:
         return
     column = plan.clusters_column
-    if not column or column not in answers:
+    if not column:
         yield PlanProblem("clusters_column", "Say which column names the group drawn first.")
         return
+    if column not in answers:
+        yield PlanProblem("clusters_column", f"The file has no column {column}: choose another.")
+        return
     labels = label_texts(answers[column])
-    groups = int(labels[labels != ""].nunique())
-    if (labels == "").any():
+    if (blank := int((labels == "").sum())) > 0:
         yield PlanProblem(
             "clusters_column",
-            f"{write_count(int((labels == '').sum()))} answers have no {column}: fill it in the "
-            "file, or choose another column.",
+            f"{write_count(blank)} answers have no {column}: fill it in the file, or choose "
+            "another column.",
         )
-    if plan.universe_clusters is not None and plan.universe_clusters < groups:
+    yield from _group_count_problems(plan, int(labels[labels != ""].nunique()))
+    yield from _straddling_groups(plan, answers, labels)
+
+
+def _group_count_problems(plan: SamplingPlan, groups: int) -> Iterator[PlanProblem]:
+    """What the number of groups says against the plan."""
+    if groups == 1:
+        yield PlanProblem(
+            "clusters_column",
+            f"All answers have the same {plan.clusters_column}, so nothing shows how groups "
+            "differ: choose another column, or another way people got in.",
+            blocks=False,
+        )
+    there = plan.universe_clusters
+    if there is not None and there < groups:
         yield PlanProblem(
             "universe_clusters",
             f"The file has {write_count(groups)} groups but the universe only "
-            f"{write_count(plan.universe_clusters)}: correct the number.",
+            f"{write_count(there)}: correct the number.",
+        )
+    elif there is not None and plan.strata_column:
+        yield PlanProblem(
+            "universe_clusters",
+            f"Groups were drawn separately by {plan.strata_column}, so {write_count(there)} in all "
+            "do not say how many each had: they are counted as endless. Leave the number out.",
+            blocks=False,
+        )
+
+
+def _straddling_groups(
+    plan: SamplingPlan, answers: pd.DataFrame, groups: pd.Series
+) -> Iterator[PlanProblem]:
+    """A group that lies in two strata cannot have been drawn within one."""
+    if plan.strata_column not in answers:
+        return
+    strata = label_texts(answers[plan.strata_column]).groupby(groups).nunique()
+    straddling = [str(label) for label in strata.index[strata > 1] if label != ""]
+    if straddling:
+        more = f" and {write_count(len(straddling) - 1)} more" if len(straddling) > 1 else ""
+        yield PlanProblem(
+            "clusters_column",
+            f"{straddling[0]}{more}: its answers have different {plan.strata_column}, but a group "
+            "lies in one stratum: correct the file, or do not separate the draw by it.",
         )

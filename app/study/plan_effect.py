@@ -8,6 +8,7 @@ import numpy as np
 import pandas as pd
 
 from app.study.design_building import BuiltDesign
+from app.study.number_format import write_count
 from app.study.plan_checks import known_universe, label_texts
 from app.study.sampling_plan import SamplingPlan
 from estimators import proportion
@@ -40,11 +41,14 @@ class PlanEffect:
         if not self.universe:
             return ""
         part = self.asked / self.universe
+        if part >= 1:
+            return "everybody" if part == 1 else "some more than once"
         if part >= 0.995:
-            return "everybody"
-        if part > 0.55:
+            return "nearly everybody"
+        number = max(round(1 / part), 2)
+        if part > 0.1 and abs(part * number - 1) > _NEAR:
             return f"{round(part * 100)} in a hundred"
-        return _one_in(round(1 / part))
+        return f"one in {_in_words(number)}"
 
 
 def plan_effect(plan: SamplingPlan, built: BuiltDesign, answers: pd.DataFrame) -> PlanEffect:
@@ -61,7 +65,7 @@ def plan_effect(plan: SamplingPlan, built: BuiltDesign, answers: pd.DataFrame) -
     """
     half = _every_second(plan, answers)
     here = proportion(half, built.design)
-    endless = proportion(half, built.design.without_correction())
+    endless = proportion(half, built.endless)
     universe = None if built.fallback else known_universe(plan)
     return PlanEffect(here.half_width * 100, endless.half_width * 100, len(answers), universe)
 
@@ -78,10 +82,9 @@ def _every_second(plan: SamplingPlan, answers: pd.DataFrame) -> np.ndarray:
     return chosen
 
 
+_NEAR = 0.06  # "one in three" says 33 in a hundred within two
 _NUMBERS = ("one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten")
 
 
-def _one_in(number: int) -> str:
-    if number < 2:
-        return "about half"
-    return f"one in {_NUMBERS[number - 1] if number <= len(_NUMBERS) else f'{number:,}'}"
+def _in_words(number: int) -> str:
+    return _NUMBERS[number - 1] if number <= len(_NUMBERS) else write_count(number)

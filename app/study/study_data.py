@@ -62,9 +62,10 @@ def prepare_study(
     study, questions, plan
         As stored.
     answers : DataFrame
-        All rows of the fieldwork file.
+        All rows of the fieldwork file; where nobody answered anything, all are kept.
     """
-    kept = answers[_answered_anything(questions, answers)].reset_index(drop=True)
+    answered = _answered_anything(questions, answers)
+    kept = answers[answered if answered.any() else ~answered].reset_index(drop=True)
     return StudyData(study, questions, plan, kept, len(answers), build_design(plan, kept))
 
 

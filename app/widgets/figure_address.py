@@ -6,6 +6,7 @@ import json
 
 from app.study.figure_requests import FigureRequest, Statistic
 from app.study.figures import default_request, statistics_of
+from app.study.figures import takes_answers as counts_answers
 from app.study.questions import Question, QuestionKind
 from app.study.study_data import StudyData
 from app.widgets import address
@@ -57,7 +58,7 @@ def from_address(data: StudyData) -> FigureRequest | None:
         group_answer=address.read("ga") if data.question(address.read("g")) else "",
         confidence=_level(),
         method=_method(),
-        missing_counted=address.read("dk") == "1",
+        missing_counted=address.read("dk") == "1" and counts_answers(question, statistic),
         split_by=address.read("by") if data.question(address.read("by")) else "",
     )
 
@@ -83,14 +84,6 @@ def _list_of(text: str) -> tuple[str, ...]:
     except ValueError:
         return ()
     return tuple(str(v) for v in values) if isinstance(values, list) else ()
-
-
-def counts_answers(question: Question, statistic: Statistic) -> bool:
-    """Whether a figure counts people who gave an answer."""
-    if statistic is Statistic.SHARE:
-        return True
-    kinds = (QuestionKind.CHOICE, QuestionKind.SEVERAL)
-    return statistic is Statistic.TOTAL and question.kind in kinds
 
 
 def _level() -> float:

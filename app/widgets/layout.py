@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import NoReturn
 
@@ -68,7 +69,7 @@ def open_study() -> OpenStudy:
 
 
 def _no_study(study_id: str) -> NoReturn:
-    dress()
+    st.session_state.pop("message", None)  # what could not be kept is gone with the study
     if study_id:
         problem("This study is not here any more: it was deleted, or the address is mistyped.")
     else:
@@ -115,10 +116,26 @@ def problem(sentence: str) -> None:
     st.html(f'<p class="hr-problem" role="alert"><b>Please look:</b> {as_html(sentence)}</p>')
 
 
-def store_problem(error: StoreError) -> None:
+def store_problem(error: Exception) -> None:
     """Say what the store said, with a way to see what is stored now."""
-    problem(error.sentence)
+    problem(str(error))
     st.button("Show what is stored now", key="show_stored")
+
+
+def guarded(action: Callable[..., object], *arguments: object) -> bool:
+    """Do something in the store, for callbacks; what it refuses is said on the next run.
+
+    Returns
+    -------
+    bool
+        Whether it was done.
+    """
+    try:
+        action(*arguments)
+    except StoreError as error:
+        later(error.sentence)
+        return False
+    return True
 
 
 def say(text: str, kind: str = "hr-soft") -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import partial
 
 import pandas as pd
@@ -12,12 +13,14 @@ from app.study.figure_rows import MOST_GROUPS
 from app.study.number_format import write_count
 from app.study.plan_checks import known_universe, stratum_rows, universe_from_strata
 from app.study.questions import Question, QuestionKind
-from app.study.sampling_plan import SamplingMethod
+from app.study.sampling_plan import SamplingMethod, StratumCount
 from app.widgets import layout
-from app.widgets.plan_saving import PlanKeeper, fill, show_refusal
+from app.widgets.plan_saving import PlanKeeper
 from app.widgets.plan_strata import show_strata
+from app.widgets.refusals import checked_length, fill, show_refusal
 
 NONE = "none"
+MOST_LETTERS = 120
 
 _CONSEQUENCES = {
     SamplingMethod.CHANCE: "Every unit on a list had a known chance. The size of the universe "
@@ -57,15 +60,16 @@ def _show_size(keeper: PlanKeeper) -> None:
     by_strata = universe_from_strata(plan)
     known = known_universe(plan)
     fill("plan_size", write_count(plan.universe_size) if plan.universe_size else "")
+    take = ("plan_size", "universe_size", partial(read_count, name="How many are there"))
     st.text_input(
         "How many are there?",
         key="plan_size",
         on_change=keeper.take,
-        args=("plan_size", "universe_size", partial(read_count, name="How many are there")),
+        args=take,
         placeholder="empty: I don\u2019t know",
         max_chars=20,
     )
-    show_refusal("plan_size")
+    show_refusal("plan_size", keeper.take, take)
     if by_strata is not None and by_strata != plan.universe_size:
         layout.say(f"The strata add up to {write_count(by_strata)}; that counts.")
     if known is None:
@@ -79,7 +83,7 @@ def _text(
     fill(key, stored)
 
     def read(value: str) -> str:
-        text = " ".join(str(value).split())
+        text = checked_length(value, MOST_LETTERS, label)
         if needed and not text:
             raise ValueError(f"{label}: type a word such as \u201c{example}\u201d.")
         return text
@@ -90,9 +94,9 @@ def _text(
         on_change=keeper.take,
         args=(key, field, read),
         placeholder=f"such as {example}",
-        max_chars=120,
+        max_chars=MOST_LETTERS,
     )
-    show_refusal(key)
+    show_refusal(key, keeper.take, (key, field, read))
 
 
 def show_method(keeper: PlanKeeper) -> None:
@@ -104,7 +108,7 @@ def show_method(keeper: PlanKeeper) -> None:
         list(SamplingMethod),
         key="plan_method",
         format_func=lambda method: method.value,
-        on_change=keeper.take,
+        on_change=keeper.choose,
         args=("plan_method", "method"),
         label_visibility="collapsed",
     )
@@ -114,7 +118,7 @@ def show_method(keeper: PlanKeeper) -> None:
         st.checkbox(
             "Each could be drawn twice",
             key="plan_replacement",
-            on_change=keeper.take,
+            on_change=keeper.choose,
             args=("plan_replacement", "replacement"),
         )
 
@@ -127,20 +131,27 @@ def show_groups(keeper: PlanKeeper, questions: tuple[Question, ...], answers: pd
     left, right = st.columns(2)
     with left:
         st.subheader("Which groups were drawn first?", anchor="clusters_column")
-        _choose(keeper, "Column that names the group", "clusters_column", columns, questions)
+        _choose(
+            keeper, "Column that names the group", "clusters_column", columns, questions, answers
+        )
     with right:
         st.subheader("How many groups are there in all?", anchor="universe_clusters")
         number = keeper.plan.universe_clusters
         fill("plan_clusters", write_count(number) if number else "")
+        take = (
+            "plan_clusters",
+            "universe_clusters",
+            partial(read_count, name="Groups in the universe"),
+        )
         st.text_input(
             "Groups in the universe",
             key="plan_clusters",
             on_change=keeper.take,
-            args=("plan_clusters", "universe_clusters", partial(read_count, name="Groups")),
+            args=take,
             placeholder="empty: I don\u2019t know",
             max_chars=20,
         )
-        show_refusal("plan_clusters")
+        show_refusal("plan_clusters", keeper.take, take)
 
 
 def show_separate_draws(
@@ -156,7 +167,7 @@ def show_separate_draws(
         and 2 <= len(q.answers) <= MOST_GROUPS
     ]
     stored = keeper.plan.strata_column
-    _choose(keeper, "Separately by", "strata_column", columns, questions)
+    _choose(keeper, "Separately by", "strata_column", columns, questions, answers)
     if stored and stored in answers:
         show_strata(keeper, stratum_rows(keeper.plan, answers))
 
@@ -171,7 +182,7 @@ def show_weights(
         for q in questions
         if q.kind in (QuestionKind.WEIGHT, QuestionKind.NUMBER) and q.columns[0] in answers
     ]
-    _choose(keeper, "Weights", "weights_column", columns, questions)
+    _choose(keeper, "Weights", "weights_column", columns, questions, answers)
 
 
 def _choose(
@@ -180,6 +191,7 @@ def _choose(
     field: str,
     columns: list[str],
     questions: tuple[Question, ...],
+    answers: pd.DataFrame,
 ) -> None:
     stored = str(getattr(keeper.plan, field))
     options = [NONE, *columns] if stored in ("", *columns) else [NONE, stored, *columns]
@@ -192,13 +204,14 @@ def _choose(
         key=key,
         format_func=lambda c: "none" if c == NONE else f"{c} \u00b7 {texts.get(c, '')}",
         on_change=_take_column,
-        args=(keeper, key, field),
+        args=(keeper, key, field, answers),
     )
 
 
-def _take_column(keeper: PlanKeeper, key: str, field: str) -> None:
-    column = st.session_state[key]
-    changes: dict[str, object] = {field: "" if column == NONE else column}
+def _take_column(keeper: PlanKeeper, key: str, field: str, answers: pd.DataFrame) -> None:
+    column = "" if st.session_state[key] == NONE else st.session_state[key]
+    changes: dict[str, object] = {field: column}
     if field == "strata_column":
-        changes["strata"] = ()
+        labels = stratum_rows(replace(keeper.plan, strata_column=column), answers)
+        changes["strata"] = tuple(StratumCount(label, None) for label in labels)
     keeper.save(**changes)

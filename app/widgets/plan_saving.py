@@ -11,6 +11,7 @@ import streamlit as st
 from app.store import Database, StoredPlan, StoreError
 from app.study.sampling_plan import SamplingPlan, StratumCount
 from app.widgets import layout
+from app.widgets.refusals import forget, refuse
 
 
 class PlanKeeper:
@@ -36,57 +37,50 @@ class PlanKeeper:
         """The plan as stored."""
         return self._stored.plan
 
-    def save(self, **changes: Any) -> None:  # noqa: ANN401 - fields of the plan
-        """Keep some fields."""
-        self.save_plan(replace(self.plan, **changes))
-
-    def save_plan(self, plan: SamplingPlan) -> None:
-        """Keep a whole plan."""
-        if plan == self.plan:
-            return
+    def save(self, **changes: Any) -> bool:  # noqa: ANN401 - fields of the plan
+        """Keep some fields, or leave the reason for the next run; return whether they are kept."""
         try:
-            self._database.save_plan(self._study_id, plan, self._stored.version)
+            self._keep(**changes)
         except StoreError as error:
             layout.later(error.sentence)
+            return False
+        return True
 
-    def take(self, key: str, field: str, read: Callable[[Any], Any] = lambda value: value) -> None:
-        """Keep the value of a widget; a value that cannot be read leaves the plan as it was."""
-        typed = st.session_state[key]
+    def choose(self, key: str, field: str) -> None:
+        """Keep what was chosen in a list or box."""
+        self.save(**{field: st.session_state[key]})
+
+    def take(self, key: str, field: str, read: Callable[[str], object]) -> None:
+        """Keep what was typed; what cannot be read leaves the plan as it was."""
+        self._take(key, lambda typed: {field: read(typed)})
+
+    def take_stratum(
+        self, key: str, label: str, read: Callable[[str], int | None], in_file: bool
+    ) -> None:
+        """Keep the count of one stratum; one without a count and without answers goes."""
+
+        def changes(typed: str) -> dict[str, object]:
+            sizes = {s.label: s.population_size for s in self.plan.strata}
+            sizes[label] = read(typed)
+            if sizes[label] is None and not in_file:
+                del sizes[label]
+            return {"strata": tuple(StratumCount(k, v) for k, v in sizes.items())}
+
+        self._take(key, changes)
+
+    def _take(self, key: str, changes: Callable[[str], dict[str, object]]) -> None:
+        typed = str(st.session_state[key])
         try:
-            value = read(typed)
+            self._keep(**changes(typed))
         except ValueError as error:
             refuse(key, typed, str(error))
-            return
-        st.session_state.pop(f"refused_{key}", None)
-        self.save(**{field: value})
+        except StoreError as error:
+            refuse(key, typed, error.sentence, stale=True)
+        else:
+            forget(key)
 
-    def take_stratum(self, key: str, label: str, read: Callable[[str], int | None]) -> None:
-        """Keep the count of one stratum."""
-        typed = st.session_state[key]
-        try:
-            size = read(typed)
-        except ValueError as error:
-            refuse(key, typed, str(error))
-            return
-        st.session_state.pop(f"refused_{key}", None)
-        others = {s.label: s.population_size for s in self.plan.strata}
-        others[label] = size
-        self.save(strata=tuple(StratumCount(k, v) for k, v in others.items()))
-
-
-def refuse(key: str, typed: str, sentence: str) -> None:
-    """Remember what was typed and why it was not taken, so that nothing typed is lost."""
-    st.session_state[f"refused_{key}"] = [str(typed), sentence]
-
-
-def fill(key: str, stored: str) -> None:
-    """Put the stored value into a field, or what was typed and refused."""
-    refused = st.session_state.get(f"refused_{key}")
-    st.session_state[key] = refused[0] if refused else stored
-
-
-def show_refusal(key: str) -> None:
-    """Say why what stands in a field was not taken."""
-    refused = st.session_state.get(f"refused_{key}")
-    if refused:
-        layout.problem(refused[1])
+    def _keep(self, **changes: Any) -> None:  # noqa: ANN401 - fields of the plan
+        """Keep some fields; two changes of one run build on each other."""
+        plan = replace(self.plan, **changes)
+        if plan != self.plan:
+            self._stored = self._database.save_plan(self._study_id, plan, self._stored.version)

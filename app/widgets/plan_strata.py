@@ -10,8 +10,9 @@ from app.intake.pasted_counts import PastedCounts, read_pasted_counts
 from app.study.count_text import read_count
 from app.study.number_format import write_count
 from app.study.sampling_plan import StratumCount
-from app.widgets.plain_text import as_html
-from app.widgets.plan_saving import PlanKeeper, fill, show_refusal
+from app.widgets.plain_text import as_html, as_typed
+from app.widgets.plan_saving import PlanKeeper
+from app.widgets.refusals import fill, show_refusal
 
 
 def show_strata(keeper: PlanKeeper, asked: dict[str, int]) -> None:
@@ -19,15 +20,17 @@ def show_strata(keeper: PlanKeeper, asked: dict[str, int]) -> None:
     sizes = {s.label: s.population_size for s in keeper.plan.strata}
     labels = list(dict.fromkeys([*sizes, *asked]))
     for number, label in enumerate(labels):
-        _show_stratum(keeper, number, label, asked.get(label, 0), sizes.get(label))
+        _show_stratum(keeper, number, label, asked.get(label), sizes.get(label))
     with st.expander("Paste from a spreadsheet"):
         _show_paste(keeper, labels)
 
 
 def _show_stratum(
-    keeper: PlanKeeper, number: int, label: str, asked: int, size: int | None
+    keeper: PlanKeeper, number: int, label: str, asked: int | None, size: int | None
 ) -> None:
     key = f"stratum_{number}_{keeper.plan.strata_column}"
+    take = (key, label, partial(read_count, name=label), asked is not None)
+    asked = asked or 0
     with st.container(key=f"stratum_row_{number}"):
         words, field, rail = st.columns([4, 3, 5], vertical_alignment="center", wrap=False)
         with words:
@@ -38,17 +41,17 @@ def _show_stratum(
         with field:
             fill(key, write_count(size) if size else "")
             st.text_input(
-                f"{label}: how many are there?",
+                f"{as_typed(label)}: how many are there?",
                 key=key,
                 on_change=keeper.take_stratum,
-                args=(key, label, partial(read_count, name=label)),
+                args=take,
                 label_visibility="collapsed",
                 placeholder="count",
                 max_chars=20,
             )
         with rail:
             st.html(_part_bar(asked, size))
-        show_refusal(key)
+        show_refusal(key, keeper.take_stratum, take)
 
 
 def _part_bar(asked: int, size: int | None) -> str:
@@ -78,7 +81,7 @@ def _show_paste(keeper: PlanKeeper, labels: list[str]) -> None:
             "Use these counts",
             key="use_pasted",
             on_click=_use,
-            args=(keeper, pasted, tuple(labels)),
+            args=(keeper, tuple(labels)),
         )
 
 
@@ -97,10 +100,14 @@ def _preview(pasted: PastedCounts, unknown: list[str]) -> str:
     )
 
 
-def _use(keeper: PlanKeeper, pasted: PastedCounts, labels: tuple[str, ...]) -> None:
+def _use(keeper: PlanKeeper, labels: tuple[str, ...]) -> None:
+    """Keep the counts as they stand in the box now, which may be later than the preview."""
+    pasted = read_pasted_counts(st.session_state["paste_strata"])
+    if pasted.problems:
+        return
     counts = dict(pasted.counts)
     old = {s.label: s.population_size for s in keeper.plan.strata}
     merged = {label: counts.pop(label, old.get(label)) for label in labels}
     merged.update(counts)
-    keeper.save(strata=tuple(StratumCount(k, v) for k, v in merged.items()))
-    st.session_state["paste_strata"] = ""
+    if keeper.save(strata=tuple(StratumCount(k, v) for k, v in merged.items())):
+        st.session_state["paste_strata"] = ""

@@ -32,7 +32,10 @@ def test_numbers_come_from_anything_numeric():
     assert as_numbers([1, 2], "values", 2).tolist() == [1.0, 2.0]
     assert as_numbers([True, False], "values", 2).tolist() == [1.0, 0.0]
     assert as_numbers(np.array([1, 2.5], dtype=object), "values", 2).tolist() == [1.0, 2.5]
-    assert np.isnan(as_numbers(np.array([None, 2.5], dtype=object), "values", 2)[0])
+    for missing in (None, float("nan"), Unequal()):
+        numbers = as_numbers(np.array([missing, 2.5], dtype=object), "values", 2)
+        assert np.isnan(numbers[0])
+        assert numbers[1] == 2.5
 
 
 @pytest.mark.parametrize(
@@ -74,6 +77,13 @@ def test_labels_are_coded_once_and_in_any_kind():
     assert [labels[code] for code in codes] == ["b", "a", "b"]
     codes, labels = as_labels(np.array(["b", 7, "b"], dtype=object), "strata")
     assert [labels[code] for code in codes] == ["b", 7, "b"]
+
+
+def test_labels_of_a_list_keep_their_kind():
+    codes, labels = as_labels([7, "b", 7], "strata")
+    assert [labels[code] for code in codes] == [7, "b", 7]
+    with pytest.raises(InputError, match="strata must have a label in every row"):
+        as_labels(["b", float("nan")], "strata")
 
 
 @pytest.mark.parametrize("missing", [None, float("nan"), np.datetime64("NaT"), Unequal()])

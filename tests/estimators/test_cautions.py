@@ -21,6 +21,10 @@ def test_sentences_are_plain(caution):
 
 
 def test_numbers_and_names_are_said():
-    assert "3 of the 12 people" in cautions.answers_missing(12, 9).sentence
+    missing = cautions.answers_missing(1200, 191).sentence
+    assert (
+        missing == "1,009 of 1,200 gave no answer; the figure assumes they are like those who did."
+    )
+    assert "in stratum north," in cautions.single_cluster_strata(["north"]).sentence
     many = cautions.single_cluster_strata(["a", "b", "c", "d"]).sentence
-    assert "4 of the strata (a, b, c ...)" in many
+    assert "4 strata (a, b, c ...)" in many

@@ -98,6 +98,15 @@ def test_stratified_with_and_without_replacement():
     assert_right_on_average(group_totals, VALUES[IN_GROUP].sum())
 
 
+def test_a_stratum_as_subgroup_is_right_on_average():
+    """With all five rows for c in k(c-1)/((k-1)c) instead of three, it comes out 1.2 times."""
+    found = Moments()
+    for rows in stratified_subsets({"a": [0, 1, 2, 3], "b": [4, 5, 6]}, {"a": 3, "b": 2}):
+        design = SampleDesign.stratified(STRATUM[rows], population_sizes=SIZES)
+        found.add(mean(VALUES[rows], design, where=STRATUM[rows] == "a"))
+    assert_right_on_average(found, VALUES[:4].mean())
+
+
 def test_stratified_with_replacement():
     totals = Moments()
     for first in draws([0, 1, 2, 3], 2):

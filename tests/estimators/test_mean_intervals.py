@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 
+import numpy as np
 import pytest
 from scipy import stats
 
@@ -54,3 +55,8 @@ def test_wrong_calls_are_refused_by_name(call, argument):
     with pytest.raises(InputError) as refused:
         mean_interval(*call[:3], **call[3])
     assert refused.value.argument == argument
+
+
+def test_bounds_are_plain_numbers_whatever_was_given():
+    interval = mean_interval(np.float32(3), np.float64(1), np.int64(10))
+    assert type(interval.low) is type(interval.high) is float

@@ -308,7 +308,7 @@ def test_answers_missing_is_the_smaller_sample(spend):
         found = estimator(values, design, answered=answered)
         contracts.assert_same(found, estimator(values[answered], smaller), cautions=False)
         assert [c.code for c in found.cautions] == ["answers_missing"]
-        assert "60 of the 400" in found.cautions[0].sentence
+        assert "60 of 400 gave" in found.cautions[0].sentence
 
 
 def test_answers_missing_in_strata_is_the_smaller_stratified_sample(spend):
@@ -322,13 +322,44 @@ def test_answers_missing_in_strata_is_the_smaller_stratified_sample(spend):
         contracts.assert_same(found, estimator(spend[answered], smaller), cautions=False)
 
 
-def test_given_weights_stay_as_they_are_where_answers_are_missing(spend):
+def test_given_weights_speak_for_the_silent_of_their_stratum(spend):
+    """Within each stratum the answers take over the weight of those who gave none."""
+    weights = np.random.default_rng(3).uniform(2, 9, 60)
+    strata, answered = np.arange(60) % 2, np.arange(60) % 4 > 0
+    design = SampleDesign.weighted(weights, strata=strata)
+    found = mean(spend, design, answered=answered)
+    by_stratum = [
+        np.average(spend[heard], weights=weights[heard])
+        for heard in (answered & (strata == h) for h in (0, 1))
+    ]
+    sizes = [weights[strata == h].sum() for h in (0, 1)]
+    assert found.value == pytest.approx(np.average(by_stratum, weights=sizes), rel=1e-12)
+    assert found.weighted_base == pytest.approx(weights.sum())
+
+
+def test_given_weights_without_strata_are_a_plain_weighted_mean_of_the_answers(spend):
     weights = np.random.default_rng(3).uniform(2, 9, 60)
     answered = np.arange(60) % 4 > 0
-    design = SampleDesign.weighted(weights, strata=np.arange(60) % 2)
+    design = SampleDesign.weighted(weights, population_size=600)
     found = mean(spend, design, answered=answered)
-    assert found.value == pytest.approx(np.average(spend[answered], weights=weights[answered]))
-    assert found.weighted_base == pytest.approx(weights.sum())
+    value = np.average(spend[answered], weights=weights[answered])
+    shares = (weights * (spend - value))[answered] / weights[answered].sum()
+    assert found.value == pytest.approx(value, rel=1e-12)
+    assert found.standard_error**2 == pytest.approx(
+        (1 - 0.1 * 45 / 60) * 45 / 44 * (shares @ shares), rel=1e-12
+    )
+
+
+@pytest.mark.parametrize("group", [None, np.arange(60) % 7 < 4])
+@pytest.mark.parametrize("estimator", [mean, total])
+def test_missing_answers_are_the_same_for_strata_by_counts_and_by_weights(spend, estimator, group):
+    strata = np.repeat(["a", "b"], [25, 35])
+    sizes = {"a": 400, "b": 90}
+    answered = (np.arange(60) % 5 > 0) & ((strata == "b") | (np.arange(60) % 2 == 0))
+    design = SampleDesign.stratified(strata, population_sizes=sizes)
+    weighted = SampleDesign.weighted(design.weights, strata=strata, population_size=sizes)
+    found = [estimator(spend, d, where=group, answered=answered) for d in (design, weighted)]
+    contracts.assert_same(*found)
 
 
 def test_an_attempted_census_with_missing_answers_is_no_census(spend):

@@ -38,6 +38,20 @@ _AT_REST = """() => {
     && !document.querySelector('[data-stale=true]');
 }"""
 
+_READ_READOUT = """() => [...document.querySelectorAll('main section.figure')]
+  .map(section => {
+    const text = name => section.querySelector(name)?.textContent || '';
+    const words = cell => [...cell.childNodes].filter(node => node.nodeName !== 'SUP')
+      .map(node => node.textContent).join('');
+    const cells = row => Object.fromEntries(
+      [...row.children].map(cell => [cell.className.split(' ')[0], words(cell)]));
+    return {
+      headline: text('h2'), sentence: text('.sentence'), comment: text('.comment'),
+      base: text('caption'), head: text('th.value'),
+      rows: [...section.querySelectorAll('tbody tr')].map(cells),
+    };
+  })"""
+
 _WATCH_POLICY = """
 window.policyFaults = [];
 document.addEventListener('securitypolicyviolation', event => window.policyFaults.push(
@@ -161,6 +175,21 @@ def choose(page: Page, key: str, option: str) -> None:
     idle(page)
 
 
+def choose_answers(page: Page, *wanted: str) -> None:
+    """Count these answers together on the Figure screen, and no others."""
+    box = page.locator(".st-key-address_answers")
+    there = box.locator("[data-tag]").evaluate_all("tags => tags.map(tag => tag.ariaLabel)")
+    for answer in wanted:
+        if answer not in there:
+            box.locator("input").click()
+            page.get_by_role("option", name=answer, exact=True).click()
+            page.keyboard.press("Escape")
+            idle(page)
+    for answer in {*there} - {*wanted}:
+        box.get_by_role("button", name=f"Remove {answer}", exact=True).first.click()
+        idle(page)
+
+
 def fill(page: Page, key: str, text: str) -> None:
     """Type into the field whose widget carries a key, and leave it."""
     entry = page.locator(f".st-key-{key} input, .st-key-{key} textarea").first
@@ -249,3 +278,39 @@ def publish(page: Page, title: str = "") -> str:
         fill(page, "readout_title", title)
     click(page, "Publish", exact=True)
     return text_of(page, ".st-key-new_link_card code")
+
+
+def readout_figures(page: Page) -> list[dict[str, object]]:
+    """Return what a readout page prints, figure by figure, with plain spaces."""
+    return [_plain_all(figure) for figure in page.evaluate(_READ_READOUT)]
+
+
+def _plain_all(thing: object) -> object:
+    if isinstance(thing, str):
+        return plain(thing)
+    if isinstance(thing, list):
+        return [_plain_all(part) for part in thing]
+    if isinstance(thing, dict):
+        return {name: _plain_all(part) for name, part in thing.items()}
+    return thing
+
+
+def upload(page: Page, data: bytes, file_name: str) -> None:
+    """Drop a file on the Fieldwork file screen and wait for what it becomes."""
+    chooser = page.locator("input[type=file]").first
+    chooser.set_input_files([{"name": file_name, "mimeType": "text/csv", "buffer": data}])
+    page.wait_for_url("**/file?study=*")
+    page.wait_for_selector(".st-key-first_figure .hr-number")
+    idle(page)
+
+
+def journey(page: Page, name: str) -> None:
+    """Go to another screen of the open study by its link."""
+    page.locator(".st-key-journey").get_by_role("link", name=name).click()
+    idle(page)
+
+
+def keep(page: Page) -> None:
+    """Keep the figure on the Figure screen and wait until it says so."""
+    click(page, "Keep for the readout")
+    page.get_by_text("of the readout.").first.wait_for()

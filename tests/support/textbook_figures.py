@@ -126,9 +126,7 @@ def stratified_share(strata: Strata, most: float = math.nan, *, endless: bool = 
     like = p * (1 - p) * base / ((base - 1) * variance)
     low, high = wilson(p, like * min(1.0, (_t(base - 1) / _t(df)) ** 2))
     if not math.isnan(most):
-        seen = round(p * base)
-        low = max(math.floor(low * most + 1e-6), seen) / most
-        high = min(math.ceil(high * most - 1e-6), most - (base - seen)) / most
+        low, high = _whole_units(p, low, high, base, int(most))
     return Worked(p, low, high, base, like, share=True)
 
 
@@ -159,6 +157,35 @@ def subgroup_mean(
     Rows outside count as zero (Cochran 1977, 5A.14); the variance carries k(c-1)/((k-1)c), and
     the degrees of freedom are at most k - 1, k members among c rows of the strata they lie in.
     """
+    mean, variance, df, spread = _subgroup(values, inside, strata, sizes)
+    half, k = _t(df) * math.sqrt(variance), int(inside.sum())
+    return Worked(mean, mean - half, mean + half, k, spread * k / ((k - 1) * variance))
+
+
+def subgroup_share(chosen: np.ndarray, inside: np.ndarray, universe: int) -> Worked:
+    """Share in a subgroup of a simple sample, where everybody answered.
+
+    The subgroup has at most N - n + k units, because the others were met outside of it.
+    """
+    n, k = len(chosen), int(inside.sum())
+    strata = np.full(n, "all")
+    p, variance, df, _ = _subgroup(chosen.astype(float), inside, strata, {"all": universe})
+    like = p * (1 - p) * k / ((k - 1) * variance)
+    low, high = wilson(p, like * min(1.0, (_t(k - 1) / _t(df)) ** 2))
+    return Worked(p, *_whole_units(p, low, high, k, universe - n + k), k, like, share=True)
+
+
+def _whole_units(p: float, low: float, high: float, base: int, units: int) -> tuple[float, float]:
+    """Open the ends to whole units, and cut them to what has been seen."""
+    seen = round(p * base)
+    fewest = max(math.floor(low * units + 1e-6), seen)
+    return fewest / units, min(math.ceil(high * units - 1e-6), units - (base - seen)) / units
+
+
+def _subgroup(
+    values: np.ndarray, inside: np.ndarray, strata: np.ndarray, sizes: dict[str, int]
+) -> tuple[float, float, float, float]:
+    """Mean, its variance, degrees of freedom, and weighted variance of the answers."""
     weights = np.array([sizes[h] / np.sum(strata == h) for h in strata])
     size = float(weights[inside].sum())
     mean = float((weights * values)[inside].sum() / size)
@@ -172,10 +199,8 @@ def subgroup_mean(
         variance += left * len(found) * float(np.var(found, ddof=1))
     k = int(inside.sum())
     variance *= k * (rows - 1) / ((k - 1) * rows)
-    df = min(rows - len(lived_in), k - 1)
-    half = _t(df) * math.sqrt(variance)
     spread = float((weights * (values - mean) ** 2)[inside].sum()) / size
-    return Worked(mean, mean - half, mean + half, k, spread * k / ((k - 1) * variance))
+    return mean, variance, min(rows - len(lived_in), k - 1), spread
 
 
 def wilson(p: float, n: float) -> tuple[float, float]:
