@@ -165,7 +165,8 @@ def _on_a_grid(parts: Sequence[Part], most_points: int) -> SumLaw:
     places = np.flatnonzero(probabilities > _rounding(masses, points))
     inside = np.arange(places[0], places[-1] + 1)
     first = math.fsum(one.first for one in split)
-    return SumLaw(first + step * inside, probabilities[inside], False, float(error))
+    mass = probabilities[inside] / probabilities[inside].sum()
+    return SumLaw(first + step * inside, mass, False, float(error))
 
 
 def _without_hopeless_tails(part: Part) -> Part:

@@ -39,7 +39,7 @@ class AnsweredBase:
     weights : (n,) float
         Weights of those who answered, speaking for those who did not as well; else zero.
     row_weights : (n,) float
-        The same, and the weight of the design for rows outside the base.
+        The same, and the weight of the design for rows that give no answer to the figure.
     size : float
         Sum of the weights: units of the universe the figure speaks for.
     rows : int

@@ -49,7 +49,7 @@ def proportion(
         Who the figure is about.
     answered : (n,) bool, optional
         Who of them gave an answer. The others are taken to be like those who did, within their
-        stratum, or within their cluster where members were drawn from clusters.
+        stratum, or within their cluster where clusters were drawn and no weights are given.
     confidence : float
         Between 0 and 1.
     method : str

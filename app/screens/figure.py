@@ -8,9 +8,10 @@ from app.study.figures import FigureError, compute_figure
 from app.study.sentences import describe
 from app.widgets import figure_view, layout
 from app.widgets.cached_work import database
-from app.widgets.figure_address import from_address
+from app.widgets.figure_address import from_address, mended_words
 from app.widgets.figure_pickers import show_pickers
 from app.widgets.figure_rails import show_rails
+from app.widgets.house_limit import show_limit_form
 from app.widgets.keeping import show_keep
 
 layout.dress()
@@ -26,6 +27,8 @@ if request is None:
     st.page_link("screens/questions.py", label="Questions", query_params={"study": opened.study.id})
     st.stop()
 
+if mended := mended_words(request):
+    layout.problem(mended)
 show_pickers(data, request)
 layout.show_standing(data, request, opened)
 left, right = st.columns([8, 4], gap="large")
@@ -47,7 +50,7 @@ with right:
         except StoreError as error:
             layout.store_problem(error)
     question = data.question(request.question)
-    rows = show_rails(data, request, question) if question is not None else ()
+    rows = show_rails(data, request, question) if question and question.usable else ()
 if figure is not None:
     with st.expander("How this number came about"):
         figure_view.show_steps(steps_of(data, figure, file_name=file.file_name))
@@ -55,3 +58,4 @@ if figure is not None:
         figure_view.show_rows_table(rows, data.study.decimal_mark)
     with st.expander("Method"):
         figure_view.show_method(data, figure)
+        show_limit_form(database(), opened.study)

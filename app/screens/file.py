@@ -8,6 +8,7 @@ from app.study.number_format import write_count
 from app.widgets import address, file_reading, layout
 from app.widgets.cached_work import database, read_file
 from app.widgets.deliveries import deliver
+from app.widgets.file_list import show_files
 from app.widgets.first_figure import show_first_figure
 from app.widgets.plain_text import as_html
 
@@ -48,7 +49,14 @@ if opened.file is None:
     st.stop()
 
 file = opened.file
-read = read_file(file)
+deliveries = database().files(opened.study.id)
+try:
+    read = read_file(file)
+except (FieldworkFileError, StoreError) as error:
+    layout.problem(str(error))
+    show_drop(opened.study.id, "Fieldwork file")
+    show_files(database(), deliveries, opened.study.decimal_mark)
+    st.stop()
 st.html(
     f'<p class="hr-sentence"><b>{write_count(file.rows)}</b> answers in '
     f"<b>{write_count(file.columns)}</b> columns, from {as_html(file.file_name)}</p>"
@@ -67,6 +75,9 @@ with right:
     file_reading.show_remarks(read)
 st.subheader("First rows")
 file_reading.show_first_rows(read.answers)
+if len(deliveries) > 1:
+    with st.expander(f"All deliveries ({len(deliveries)})"):
+        show_files(database(), deliveries, opened.study.decimal_mark)
 with st.expander("A new delivery for this study"):
     layout.say("Questions, plan and kept figures stay, matched by column name.")
     show_drop(opened.study.id, "Newer fieldwork file")

@@ -38,8 +38,7 @@ if stored.plan.provisional:
             "Confirm the plan",
             type="primary",
             key="confirm_plan",
-            on_click=keeper.save,
-            kwargs={"provisional": False},
+            on_click=keeper.confirm,
         )
 elif stored.plan.method is SamplingMethod.NOT_SURE:
     layout.say("Confirmed as \u201cnot sure\u201d: figures carry a caution and stay in the house.")

@@ -7,7 +7,7 @@ from app.widgets import address, layout
 from app.widgets.cached_work import database, read_file
 from app.widgets.question_card import show_question
 from app.widgets.question_form import show_form
-from app.widgets.question_list import show_counts, show_filter, show_list
+from app.widgets.question_list import show_accept_all, show_counts, show_filter, show_list
 
 layout.dress()
 opened = layout.open_study()
@@ -31,7 +31,8 @@ with right, st.container(key="question_card"):
         layout.say("Nothing needs you here. Every question is understood or settled.")
     try:
         stored = database().stored_question(opened.study.id, chosen)
-        show_question(database(), opened.study.id, stored, questions, read_file(file).answers)
+        answers = read_file(file).answers
+        show_question(database(), opened.study, stored, questions, answers)
         with st.expander("Text, kind, codes and order"):
             show_form(database(), opened.study.id, stored)
     except UnknownQuestionError:
@@ -47,3 +48,4 @@ with right, st.container(key="question_card"):
         st.page_link("screens/plan.py", label="On to the sampling plan", query_params=query)
 with left:
     show_list(shown, chosen)
+    show_accept_all(database(), opened.study.id)

@@ -14,23 +14,29 @@ from app.study.fans import fan_of
 from app.study.figure_requests import Statistic
 from app.study.figure_rows import (
     FigureRow,
+    axis_of,
     figure_rows,
     group_requests,
+    has_fixed_ends,
     is_held_back,
+    rail_of,
     single_row,
 )
-from app.study.figures import Figure, FigureError, compute_figure
+from app.study.figures import Figure, FigureError, compute_figure, reader
 from app.study.frozen import FrozenFigure, FrozenReadout, FrozenRow
 from app.study.number_format import NO_BREAK, write_count, write_plain
 from app.study.pictures import Bar, Fan, Rail
 from app.study.plan_checks import known_universe
-from app.study.sentences import describe
+from app.study.sentences import FigureText, describe
 from app.study.study import KeptFigure
 from app.study.study_data import StudyData
 from app.study.width_check import Outcome
 from estimators import METHODS_VERSION
 
 SMALLEST_BAR = 5  # answers; common practice for tables that leave the house, no single source
+_HIDDEN = "hidden"
+_FEW = f"under {SMALLEST_BAR}"
+_FEW_LINE = f"fewer than {SMALLEST_BAR} answered"
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,7 +75,8 @@ def freeze(data: StudyData, kept: tuple[KeptFigure, ...], draft: Draft) -> Froze
     FigureError
         When a kept figure cannot be given any more.
     """
-    figures = [(item, compute_figure(data, item.request)) for item in kept]
+    read = reader(data)
+    figures = [(item, compute_figure(data, item.request, read=read)) for item in kept]
     sections = tuple(_section(data, item, figure) for item, figure in figures)
     return FrozenReadout(
         study=data.study.name,
@@ -94,7 +101,8 @@ def headline_of(data: StudyData, item: KeptFigure) -> str:
     """Return the manager's headline, or the one proposed from the sentence."""
     if item.headline.strip():
         return item.headline.strip()
-    return describe(data, compute_figure(data, item.request)).headline
+    figure = compute_figure(data, item.request)
+    return describe(data, figure, step=_step_of(_rows(data, figure))).headline
 
 
 def _study_base(data: StudyData) -> str:
@@ -106,32 +114,48 @@ def _study_base(data: StudyData) -> str:
 
 
 def _section(data: StudyData, item: KeptFigure, figure: Figure) -> FrozenFigure:
-    text = describe(data, figure)
-    held = is_held_back(figure)
+    held = _is_kept_from_clients(figure)
     rows = _rows(data, figure)
+    step = _step_of(rows)
+    text = describe(data, figure, step=step)
+    fan = None if held else guarded_fan(fan_of(data, figure, step=step), figure.counts.answered)
+    ends = _shown_axis(rows)
     return FrozenFigure(
-        headline=_safe_headline(data, item, figure),
+        headline=_safe_headline(item, figure, text),
         sentence=_held_sentence(figure) if held else text.sentence,
         comment=item.comment.strip(),
         question=figure.question.text,
         column_head=_column_head(figure, rows),
         axis_low_text=_axis_text(data, figure, low=True),
         axis_high_text=_axis_text(data, figure, low=False),
-        rows=tuple(_frozen_row(row) for row in rows),
-        fan=None if held else guarded_fan(fan_of(data, figure), figure.counts.answered),
-        base_line=text.base_line,
+        rows=tuple(_frozen_row(row, ends) for row in rows),
+        fan=fan,
+        base_line=text.base_line if figure.counts.answered >= SMALLEST_BAR else _FEW_LINE,
         cautions=tuple(caution.sentence for caution in figure.estimate.cautions),
     )
 
 
-def _safe_headline(data: StudyData, item: KeptFigure, figure: Figure) -> str:
-    """Return the headline; a proposed one for a figure held back carries no number."""
-    if item.headline.strip() or not is_held_back(figure):
-        return headline_of(data, item)
-    return figure.question.text
+def _safe_headline(item: KeptFigure, figure: Figure, text: FigureText) -> str:
+    """Return the headline; that of a figure held back carries none of its numbers."""
+    typed = item.headline.strip()
+    if not _is_kept_from_clients(figure):
+        return typed or text.headline
+    return typed if typed and not _tells(typed, text) else figure.question.text
+
+
+def _tells(headline: str, text: FigureText) -> bool:
+    """Whether a headline is the one proposed, or says value or interval as printed."""
+    words = {w for part in headline.split() for w in (part.strip("%.,:;()\u00b1"), part)}
+    printed = {text.words.value, text.words.low, text.words.high}
+    numbers = {number for words_ in printed for number in words_.split() if number[-1:].isdigit()}
+    amounts = ("half", "quarter", "quarters", "none", "all of")
+    told = headline.casefold()
+    return bool(words & numbers) or any(amount in told for amount in amounts)
 
 
 def _held_sentence(figure: Figure) -> str:
+    if figure.counts.answered < SMALLEST_BAR:
+        return "This figure is hidden to protect respondents."
     return f"This figure is held back: {figure.verdict.short}."
 
 
@@ -142,10 +166,23 @@ def _rows(data: StudyData, figure: Figure) -> tuple[FigureRow, ...]:
     return figure_rows(data, group_requests(split, figure.request))
 
 
+def _step_of(rows: tuple[FigureRow, ...]) -> float | None:
+    """Return the step of the column: headline, sentence and fan are rounded like the table."""
+    return rows[0].words.step if rows[0].words is not None else None
+
+
+def _shown_axis(rows: tuple[FigureRow, ...]) -> tuple[float, float]:
+    """Return the axis of the rails; what is held back does not show in its length either."""
+    shown = [r.figure for r in rows if r.figure and not _is_kept_from_clients(r.figure)]
+    fixed = [r.figure for r in rows if r.figure is not None and has_fixed_ends(r.figure)]
+    return axis_of(shown or fixed)
+
+
 def _column_head(figure: Figure, rows: tuple[FigureRow, ...]) -> str:
     if figure.scale.share:
         return "%"
-    units = {row.words.unit for row in rows if row.words is not None}
+    shown = [row for row in rows if row.figure and not _is_kept_from_clients(row.figure)]
+    units = {row.words.unit for row in shown if row.words is not None}
     unit = units.pop() if len(units) == 1 else ""  # mixed ones stand in the cells
     noun = {Statistic.TOTAL: "total", Statistic.MEDIAN: "median"}.get(
         figure.request.statistic, "average"
@@ -162,26 +199,34 @@ def _axis_text(data: StudyData, figure: Figure, *, low: bool) -> str:
     return "0" if low and figure.scale.natural_zero else ""
 
 
-def _frozen_row(row: FigureRow) -> FrozenRow:
-    if row.figure is None or is_held_back(row.figure):
-        short = row.figure.verdict.short if row.figure is not None else "too few to show"
-        words = f"held back: {short}"
-        empty = Rail(
-            row.rail.axis_low, row.rail.axis_high, 0.0, 0.0, 0.0, False, "held back", words
-        )
-        return FrozenRow(row.label, "", "", row.answers, words, Outcome.HOLD_BACK.value, empty)
-    note = ""
-    if row.figure.verdict.outcome is Outcome.NOTE:
-        note = f"read with care: {row.figure.verdict.reason}"
+def _frozen_row(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
+    if row.figure is None or _is_kept_from_clients(row.figure):
+        return _row_held_back(row, ends)
+    verdict, note = row.figure.verdict, ""
+    if verdict.outcome is Outcome.NOTE:
+        note = f"read with care: {verdict.reason}"
+    rail = rail_of(row.figure, row.rail.text, ends)
     return FrozenRow(
-        row.label,
-        row.value,
-        row.between,
-        row.answers,
-        note,
-        row.figure.verdict.outcome.value,
-        row.rail,
+        row.label, row.value, row.between, row.answers, note, verdict.outcome.value, rail
     )
+
+
+def _row_held_back(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
+    """Return a row without its figure; a handful of answers is not counted out."""
+    if row.figure is None:
+        words, state, answers = "held back: too few to show", Outcome.HOLD_BACK.value, _FEW
+    elif row.figure.counts.answered < SMALLEST_BAR:
+        words, state, answers = "hidden to protect respondents", _HIDDEN, _FEW
+    else:
+        words = f"held back: {row.figure.verdict.short}"
+        state, answers = Outcome.HOLD_BACK.value, row.answers
+    empty = Rail(*ends, 0.0, 0.0, 0.0, False, state, words)
+    return FrozenRow(row.label, "", "", answers, words, state, empty)
+
+
+def _is_kept_from_clients(figure: Figure) -> bool:
+    """Whether a figure is too wide for the house, or about too few people to be shown at all."""
+    return is_held_back(figure) or figure.counts.answered < SMALLEST_BAR
 
 
 def guarded_fan(fan: Fan, answered: int) -> Fan:
@@ -206,21 +251,26 @@ def _hidden_bar(bar: Bar) -> Bar:
 
 
 def _in_short(sections: tuple[FrozenFigure, ...]) -> tuple[str, ...]:
-    shown = [s for s in sections if s.rows and s.rows[0].verdict != Outcome.HOLD_BACK.value]
-    return tuple(
-        f"{s.headline.rstrip('.')}: between {s.rows[0].between.replace(' to ', ' and ')}."
-        if " to " in s.rows[0].between
-        else f"{s.headline.rstrip('.')}."
-        for s in shown[:3]
-    )
+    shown = [s for s in sections if s.rows and s.rows[0].value]
+    return tuple(_short_sentence(section) for section in shown[:3])
+
+
+def _short_sentence(section: FrozenFigure) -> str:
+    """Return the headline with the interval behind it, where there is one."""
+    headline, row = section.headline.rstrip(" ."), section.rows[0]
+    number = row.between.split(NO_BREAK)[0]
+    between = f" ({row.between})" if number != row.value.split(NO_BREAK)[0] else ""
+    end = "" if headline.endswith(("?", "!")) and not between else "."
+    return f"{headline}{between}{end}"
 
 
 def _held_back(sections: tuple[FrozenFigure, ...]) -> tuple[str, ...]:
     return tuple(
-        f"{section.headline.rstrip('.')}, {row.who}: {row.note}."
+        f"\u201c{section.headline.rstrip(' .')}\u201d, {row.who}: "
+        f"{row.note.removeprefix('held back: ')}."
         for section in sections
         for row in section.rows
-        if row.verdict == Outcome.HOLD_BACK.value
+        if not row.value
     )
 
 

@@ -2,11 +2,16 @@
 
 from __future__ import annotations
 
-from app.study.figure_steps import method_name
+from app.study.figure_steps import (
+    counts_universe,
+    method_name,
+    uses_strata,
+    weighted_by_stratum,
+)
 from app.study.figures import Figure
-from app.study.number_format import NO_BREAK, write_count, write_number
-from app.study.plan_checks import known_universe
-from app.study.sampling_plan import SamplingMethod, SamplingPlan
+from app.study.number_format import NO_BREAK, write_count, write_plain
+from app.study.plan_checks import draws_repeat, known_universe
+from app.study.sampling_plan import SamplingMethod
 from app.study.study_data import StudyData
 from app.study.width_check import limit_words
 
@@ -38,8 +43,13 @@ def method_note(data: StudyData, figures: list[Figure]) -> tuple[Item, ...]:
         (
             "What the intervals leave out",
             "They speak of sampling alone. Wording of questions, people who cannot be reached and "
-            "mistakes in answering add errors that no formula shows. The code of practice that "
-            "applies to this study goes before this note.",
+            "mistakes in answering add errors that no formula shows.",
+        ),
+        (
+            "What this note does not say",
+            "Who commissioned and who conducted the survey, when, how and in which language people "
+            "were asked, and the order of the questions are not in the file: ask whoever sent this "
+            "readout. The code of practice that applies to the study goes before this note.",
         ),
     )
 
@@ -68,55 +78,95 @@ def _capital(text: str) -> str:
 
 def _sampling(data: StudyData) -> str:
     plan = data.plan
-    text = _METHODS[plan.method]
-    if plan.strata_column:
-        text += f" This was done separately by {plan.strata_column}."
+    parts = [_METHODS[plan.method]]
+    if uses_strata(data):
+        by = strata_name(data)
+        if plan.method is SamplingMethod.EVERYBODY:
+            parts = [_INVITED, f"The intervals assume that, within each {by}, {_ALIKE}"]
+        else:
+            parts.append(f"This was done separately by {by}.")
     if plan.method is SamplingMethod.CHANCE:
-        text += _replacement(plan)
-    return text
+        parts.append(
+            "Each could be drawn more than once."
+            if draws_repeat(plan)
+            else "Each could be drawn once at most."
+        )
+    if plan.method is SamplingMethod.GROUPS:
+        parts.append(_groups(data))
+    return " ".join(parts)
 
 
-def _replacement(plan: SamplingPlan) -> str:
-    if plan.replacement:
-        return " Each could be drawn more than once."
-    return " Each could be drawn once at most."
+def strata_name(data: StudyData) -> str:
+    """Return what the draw was separated by, as people read it."""
+    question = data.question(data.plan.strata_column)
+    name = question.text if question is not None else data.plan.strata_column
+    return f"\u201c{name.rstrip(' .?:')}\u201d"
 
 
+def _groups(data: StudyData) -> str:
+    plan, mark = data.plan, _mark(data)
+    drawn = len(data.built.design.stages.rows_drawn)
+    if plan.universe_clusters is None or plan.strata_column:
+        return f"{write_count(drawn, mark)} groups were drawn."
+    return (
+        f"{write_count(drawn, mark)} of {write_count(plan.universe_clusters, mark)} groups "
+        "were drawn."
+    )
+
+
+_INVITED = "Everybody was invited and some answered."
+_ALIKE = "those who did not answer resemble those who did."
 _METHODS = {
     SamplingMethod.CHANCE: "Drawn by chance from a list.",
-    SamplingMethod.EVERYBODY: "Everybody was invited and some answered. The intervals assume that "
-    "those who did not answer resemble those who did.",
+    SamplingMethod.EVERYBODY: f"{_INVITED} The intervals assume that {_ALIKE}",
     SamplingMethod.GROUPS: "Whole groups were drawn first; people in the same group resemble each "
     "other, and the intervals allow for that.",
     SamplingMethod.QUOTA: "Quotas or an online panel: not drawn by chance. The intervals are a "
     "model: they assume that within this sample people answered as a chance sample would have.",
-    SamplingMethod.NOT_SURE: "Not known.",
+    SamplingMethod.NOT_SURE: "Not known. The intervals are those of a simple draw from an endless "
+    "universe.",
 }
 
 
 def _answered(data: StudyData) -> str:
-    mark = _mark(data)
-    text = f"{write_count(len(data.answers), mark)} {data.plan.unit_many} answered"
+    mark, size = _mark(data), known_universe(data.plan)
+    whole = f" of {write_count(size, mark)}" if size is not None else ""
+    text = f"{write_count(len(data.answers), mark)}{whole} {data.plan.unit_many} answered"
     if data.set_aside:
         rows = write_count(data.set_aside, mark)
         text += f"; {rows} rows in which nothing was answered are set aside"
-    return text + ". Don\u2019t know and refused are left out of a figure unless it says otherwise."
+    alike = f" with the same {strata_name(data)}" if uses_strata(data) else ""
+    return (
+        f"{text}. Don\u2019t know and refused are left out of a figure unless it says otherwise. "
+        f"Who gave no answer to a question is taken to be like those{alike} who did."
+    )
 
 
 def _weights(data: StudyData) -> str:
-    if data.plan.weights_column:
+    if data.plan.weights_column and not data.built.fallback:
         return f"Weights as delivered with the file, column {data.plan.weights_column}."
-    if data.plan.strata_column and known_universe(data.plan) is not None:
-        return f"Each answer counts for the units of its {data.plan.strata_column} it stands for."
+    if weighted_by_stratum(data):
+        return (
+            f"Each answer counts for as many {data.plan.unit_many} as its {strata_name(data)} has "
+            "in the universe for each answer."
+        )
     return "None: every answer counts the same."
 
 
 def _precision(data: StudyData, figures: list[Figure]) -> str:
+    if not figures:
+        return "There are no figures."
     levels = sorted({f.request.confidence for f in figures})
-    level = " and ".join(f"{write_number(x * 100, 1.0, _mark(data))}{NO_BREAK}%" for x in levels)
+    level = " and ".join(
+        f"{write_plain(round(x * 100, 6), _mark(data))}{NO_BREAK}%" for x in levels
+    )
     names = " and ".join(dict.fromkeys(method_name(f) for f in figures))
-    if known_universe(data.plan) is not None and not data.plan.replacement:
-        counted = "The size of the universe is counted: the more of it was asked, the narrower."
-    else:
-        counted = "The universe is treated as endless."
-    return f"Intervals at the {level} level, by {names}. {counted}"
+    return f"Intervals at the {level} level, by {names}. {_universe_counted(data)}"
+
+
+def _universe_counted(data: StudyData) -> str:
+    if not counts_universe(data):
+        return "The universe is treated as endless."
+    if data.plan.method is SamplingMethod.GROUPS:
+        return "The number of groups is counted: the more of them were drawn, the narrower."
+    return "The size of the universe is counted: the more of it was asked, the narrower."

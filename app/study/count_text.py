@@ -29,8 +29,9 @@ def read_count(text: str, name: str) -> int | None:
     if not plain:
         return None
     if not (_PLAIN.fullmatch(plain) or _GROUPED.fullmatch(plain)):
+        typed = text.strip()[:40]
         raise ValueError(
-            f"{name}: \u201c{text.strip()[:40]}\u201d is no whole number; type it like 1184 or 1,184."
+            f"{name}: \u201c{typed}\u201d is no whole number; type it like 1184 or 1,184."
         )
     digits = re.sub(r"\D", "", plain).lstrip("0")
     number = int(digits or "0") if len(digits) <= _MOST_DIGITS else 10**_MOST_DIGITS

@@ -132,7 +132,7 @@ def _attempted_census(plan: SamplingPlan, answers: pd.DataFrame) -> SampleDesign
 
 
 def _weighted(plan: SamplingPlan, answers: pd.DataFrame) -> SampleDesign:
-    """Weights from the file; an endless first stage where units could be drawn twice."""
+    """Take weights from the file; the universe is endless where units could be drawn twice."""
     weights = _weights(plan, answers)
     size = _sizes(plan, answers) if _sizes_are_complete(plan, answers) else known_universe(plan)
     design = SampleDesign.weighted(
@@ -148,7 +148,7 @@ def _weighted(plan: SamplingPlan, answers: pd.DataFrame) -> SampleDesign:
 
 
 def _groups(plan: SamplingPlan, answers: pd.DataFrame) -> SampleDesign:
-    """Groups drawn first; without weights an answer counts for the units of its stratum."""
+    """Draw groups first; without weights an answer counts for the units of its stratum."""
     weights = _weights(plan, answers)
     if weights is None:
         weights = _stratum_weights(plan, answers)
@@ -178,7 +178,7 @@ def _sizes_are_complete(plan: SamplingPlan, answers: pd.DataFrame) -> bool:
 
 
 def _labels(answers: pd.DataFrame, column: str) -> npt.NDArray[np.str_]:
-    return label_texts(answers[column]).to_numpy(dtype=str)
+    return np.asarray(label_texts(answers[column]).to_numpy(dtype=str))
 
 
 def _sizes(plan: SamplingPlan, answers: pd.DataFrame) -> dict[str, int]:
@@ -193,4 +193,4 @@ def _sizes(plan: SamplingPlan, answers: pd.DataFrame) -> dict[str, int]:
 def _weights(plan: SamplingPlan, answers: pd.DataFrame) -> npt.NDArray[np.float64] | None:
     if not plan.weights_column:
         return None
-    return pd.to_numeric(answers[plan.weights_column]).to_numpy(dtype=np.float64)
+    return np.asarray(pd.to_numeric(answers[plan.weights_column]), dtype=np.float64)

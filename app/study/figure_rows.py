@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass, replace
 
 from app.study.figure_requests import FigureRequest, Statistic
-from app.study.figures import Figure, FigureError, compute_figure
+from app.study.figures import Figure, FigureError, ReadValues, compute_figure, reader
 from app.study.number_format import FigureWords, column_step, write_count
 from app.study.pictures import Rail
 from app.study.questions import Question, QuestionKind
@@ -92,13 +92,14 @@ def figure_rows(
     by_answer : bool
         True labels the rows by answer, False by group.
     """
-    computed = [(request, *_try(data, request)) for request in requests]
+    read = reader(data)
+    computed = [(request, *_try(data, request, read)) for request in requests]
     figures = [figure for _, figure, _ in computed if figure is not None]
     share = bool(figures) and figures[0].scale.share
     factor = 100.0 if share else 1.0
     widths = [f.estimate.half_width * factor for f in figures]
-    step = column_step(widths, share=share)
-    ends = _axis(figures)
+    step = column_step(widths, share=share, values=[f.estimate.value * factor for f in figures])
+    ends = axis_of(figures)
     return _in_one_unit(
         tuple(
             _row(data, request, figure, reason, step, ends, by_answer)
@@ -119,14 +120,14 @@ def _in_one_unit(rows: tuple[FigureRow, ...]) -> tuple[FigureRow, ...]:
     )
 
 
-def _try(data: StudyData, request: FigureRequest) -> tuple[Figure | None, str]:
+def _try(data: StudyData, request: FigureRequest, read: ReadValues) -> tuple[Figure | None, str]:
     try:
-        return compute_figure(data, request), ""
+        return compute_figure(data, request, read=read), ""
     except FigureError as error:
         return None, str(error)
 
 
-def _axis(figures: list[Figure]) -> tuple[float, float]:
+def axis_of(figures: list[Figure]) -> tuple[float, float]:
     """Return one axis for all rows: fixed ends where the scale has them."""
     if not figures:
         return 0.0, 1.0
@@ -192,6 +193,11 @@ def single_row(data: StudyData, figure: Figure) -> FigureRow:
     return _row(
         data, figure.request, figure, "", words.step, (figure.scale.low, figure.scale.high), False
     )
+
+
+def has_fixed_ends(figure: Figure) -> bool:
+    """Whether the axis of its rail tells nothing of the figure: a share, or a scale."""
+    return figure.scale.share or figure.scale.scale_answers
 
 
 def is_held_back(figure: Figure) -> bool:

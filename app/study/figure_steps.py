@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
+
+import numpy as np
 
 from app.study.figure_requests import Statistic
 from app.study.figures import Figure
-from app.study.number_format import NO_BREAK, write_count, write_number
-from app.study.plan_checks import known_universe
+from app.study.number_format import NO_BREAK, write_count, write_number, write_plain
+from app.study.plan_checks import draws_repeat, known_universe
 from app.study.sampling_plan import SamplingMethod
 from app.study.sentences import words_of
 from app.study.study_data import StudyData
@@ -61,7 +64,7 @@ def steps_of(data: StudyData, figure: Figure, *, file_name: str) -> tuple[Step, 
         Step(
             "interval",
             words.between,
-            f"{write_number(figure.request.confidence * 100, 1.0, mark)}{NO_BREAK}% level",
+            f"{write_plain(round(figure.request.confidence * 100, 6), mark)}{NO_BREAK}% level",
         ),
     )
 
@@ -88,7 +91,19 @@ def _missing(figure: Figure, mark: str) -> str:
 def _weights(data: StudyData) -> str:
     if data.plan.weights_column and not data.built.fallback:
         return data.plan.weights_column
-    return "by stratum" if data.plan.strata_column and not data.built.fallback else "none"
+    return "by stratum" if weighted_by_stratum(data) else "none"
+
+
+def weighted_by_stratum(data: StudyData) -> bool:
+    """Return whether an answer counts for the units of its stratum, by their known numbers."""
+    if data.plan.weights_column or not data.plan.strata_column:
+        return False
+    return bool(np.ptp(data.built.design.weights) > 0)
+
+
+def counts_universe(data: StudyData) -> bool:
+    """Return whether the intervals are narrower for the part of the universe that was asked."""
+    return data.built.design.stages.is_corrected
 
 
 def _plan_words(data: StudyData, mark: str) -> str:
@@ -96,25 +111,37 @@ def _plan_words(data: StudyData, mark: str) -> str:
     if data.built.fallback:
         return "the plan contradicts the file: counted as a simple draw from an endless universe"
     words = [plan.method.value]
-    if plan.strata_column:
+    if uses_strata(data):
         words.append(f"separately by {plan.strata_column}")
     size = known_universe(plan)
-    words.append("endless universe" if size is None else f"universe of {write_count(size, mark)}")
+    if not counts_universe(data):
+        words.append("counted as an endless universe")
+    elif plan.method is SamplingMethod.GROUPS:
+        words.append(f"{write_count(plan.universe_clusters or 0, mark)} groups in the universe")
+    else:
+        words.append(f"universe of {write_count(size or 0, mark)}")
     if plan.method is SamplingMethod.CHANCE:
-        words.append("each could be drawn twice" if plan.replacement else "each drawn once at most")
+        repeats = draws_repeat(plan)
+        words.append("each could be drawn twice" if repeats else "each drawn once at most")
     return ", ".join(words)
+
+
+def uses_strata(data: StudyData) -> bool:
+    """Return whether the design is made by strata."""
+    return bool(data.plan.strata_column) and len(data.built.design.stages.units_drawn) > 1
 
 
 def method_words(data: StudyData, figure: Figure) -> str:
     """Return degrees of freedom and design effect in one line."""
     mark, estimate = data.study.decimal_mark, figure.estimate
     parts = []
-    if estimate.degrees_of_freedom == estimate.degrees_of_freedom:
+    if not math.isnan(estimate.degrees_of_freedom):
         parts.append(f"{_plain(estimate.degrees_of_freedom, mark)} degrees of freedom")
-    if figure.request.statistic is not Statistic.MEDIAN and estimate.design_effect > 0:
-        parts.append(f"design effect {write_number(estimate.design_effect, 0.01, mark)}")
+    effect = estimate.design_effect
+    if figure.request.statistic is not Statistic.MEDIAN and 0 < effect < math.inf:
+        parts.append(f"design effect {write_number(effect, 0.01, mark)}")
     return ", ".join(parts)
 
 
 def _plain(value: float, mark: str) -> str:
-    return "endless" if value == float("inf") else write_count(value, mark)
+    return "endless" if math.isinf(value) else write_count(value, mark)

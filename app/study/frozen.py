@@ -23,7 +23,7 @@ class FrozenRow:
     note : str
         "" or the words that replace or follow the value ("held back: too few answers").
     verdict : str
-        "publish", "publish with a note" or "hold back".
+        "publish", "publish with a note", "hold back" or "hidden".
     rail : Rail
         The picture in the last cell.
     """

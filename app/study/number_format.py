@@ -122,13 +122,17 @@ def figure_words(
     if step is None:
         step = step_for(_half_width(numbers), share=share, value=float(numbers[0]))
     scale, unit = (1, "%") if share else _scale_word(numbers[0], step)
-    texts = [_written(x, step, scale, decimal_mark, share=share) for x in numbers]
+    value_text, low_text, high_text = (
+        _written(x, step, scale, decimal_mark, share=share) for x in numbers
+    )
     tail = f"{NO_BREAK}{unit}" if unit else ""
     return FigureWords(
-        *texts,
+        value=value_text,
+        low=low_text,
+        high=high_text,
         unit=unit,
-        between=_between(texts[1], texts[2], numbers, tail),
-        full=texts[0] + tail,
+        between=_between(low_text, high_text, numbers, tail),
+        full=value_text + tail,
         plus_minus=_plus_minus(numbers, step, scale, decimal_mark),
         step=step,
     )

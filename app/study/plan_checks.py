@@ -119,8 +119,9 @@ def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Plan
     sizes = {s.label: s.population_size for s in plan.strata}
     for label, rows in asked.items():
         yield from _stratum_problem(label, rows, sizes.get(label), plan)
-    for label in sizes.keys() - asked.keys():
-        yield from _empty_stratum_problem(label, sizes[label])
+    for label, size in sizes.items():
+        if label not in asked:
+            yield from _empty_stratum_problem(label, size)
 
 
 def _empty_stratum_problem(label: str, size: int | None) -> Iterator[PlanProblem]:
@@ -211,7 +212,7 @@ def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Pla
 
 
 def _group_count_problems(plan: SamplingPlan, groups: int) -> Iterator[PlanProblem]:
-    """What the number of groups says against the plan."""
+    """Compare the groups of the file with those of the universe."""
     if groups == 1:
         yield PlanProblem(
             "clusters_column",
@@ -238,7 +239,7 @@ def _group_count_problems(plan: SamplingPlan, groups: int) -> Iterator[PlanProbl
 def _straddling_groups(
     plan: SamplingPlan, answers: pd.DataFrame, groups: pd.Series
 ) -> Iterator[PlanProblem]:
-    """A group that lies in two strata cannot have been drawn within one."""
+    """Find groups that lie in two strata: they cannot have been drawn within one."""
     if plan.strata_column not in answers:
         return
     strata = label_texts(answers[plan.strata_column]).groupby(groups).nunique()

@@ -74,6 +74,15 @@ def _question_obstacles(data: StudyData, request: FigureRequest) -> list[Obstacl
                     "questions", key, f"{key} is not in the current file: take the figure out."
                 )
             )
+        elif not question.usable:
+            found.append(
+                Obstacle(
+                    "questions",
+                    key,
+                    f"{question.text} is set aside or holds no answers to count: use it again, or "
+                    "take the figure out.",
+                )
+            )
         elif question.needs_you:
             found.append(
                 Obstacle(

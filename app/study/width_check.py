@@ -6,9 +6,15 @@ import math
 from dataclasses import dataclass
 from enum import StrEnum
 
-from app.study.number_format import NO_BREAK, figure_words, step_for, write_count, write_number
+from app.study.number_format import NO_BREAK, step_for, write_amount, write_count, write_plain
 from app.study.study import HouseLimit
 from estimators import Estimate
+
+_ROUNDING = 1e-9  # a width this close to a limit stands on it
+_UNTOLD = {  # cautions under which a width says nothing, and what is said instead
+    "heavy_ties": "many gave the same answer, so the width says little",
+    "no_variation": "the answers show no variation, so the width says nothing",
+}
 
 
 class Outcome(StrEnum):
@@ -93,10 +99,9 @@ def judge(
         )
     if not math.isfinite(estimate.half_width):
         return Verdict(Outcome.HOLD_BACK, "no interval can be given", "too few answers")
-    if any(caution.code == "heavy_ties" for caution in estimate.cautions):
-        return Verdict(
-            Outcome.NOTE, "many gave the same answer, so the width says little", "many ties"
-        )
+    untold = [_UNTOLD[c.code] for c in estimate.cautions if c.code in _UNTOLD]
+    if untold and not scale.share:  # the interval of a share holds there too
+        return Verdict(Outcome.NOTE, untold[0], "many ties")
     return _by_width(estimate, scale, limit, decimal_mark)
 
 
@@ -105,9 +110,9 @@ def _by_width(
 ) -> Verdict:
     largest = width_limit(estimate, scale, limit)
     width, allowed = _width_words(estimate.half_width, largest, scale, decimal_mark)
-    if estimate.half_width > largest:
+    if estimate.half_width > largest * (1 + _ROUNDING):
         return Verdict(Outcome.HOLD_BACK, f"±{width} over the limit of ±{allowed}", "too wide")
-    if estimate.half_width > limit.note_part * largest:
+    if 0 < limit.note_part * largest * (1 - _ROUNDING) <= estimate.half_width:
         return Verdict(Outcome.NOTE, f"±{width}, close to the limit of ±{allowed}", "wide")
     return Verdict(Outcome.PUBLISH, f"±{width}, limit ±{allowed}", "")
 
@@ -115,27 +120,45 @@ def _by_width(
 def _width_words(
     half_width: float, largest: float, scale: FigureScale, decimal_mark: str
 ) -> tuple[str, str]:
-    """Write width and limit with one step, fine enough to tell them apart."""
+    """Write width and limit, the width fine enough to tell them apart."""
     factor, tail = (100.0, f"{NO_BREAK}points") if scale.share else (1.0, "")
     half_width, largest = half_width * factor, largest * factor
     step = step_for(half_width, share=False, value=half_width)
     if scale.share:
         step = min(max(step, 0.1), 1.0)
-    width, allowed = write_number(half_width, step, decimal_mark), ""
-    allowed = write_number(largest, step, decimal_mark)
-    if width == allowed and half_width != largest:
-        width = write_number(half_width, step / 10, decimal_mark)
-        allowed = write_number(largest, step / 10, decimal_mark)
+    fixed = scale.share or scale.scale_answers
+    for finer in (step, step / 10, step / 100, step / 1000):
+        width = write_amount(half_width, finer, decimal_mark)
+        allowed = _plain(largest, decimal_mark) if fixed else ""
+        allowed = allowed or write_amount(largest, finer, decimal_mark)
+        differ = abs(half_width - largest) > _ROUNDING * largest
+        if not differ or not _same_amount(width, allowed, decimal_mark):
+            break
     return width, allowed + tail
+
+
+def _same_amount(first: str, second: str, decimal_mark: str) -> bool:
+    """Whether two amounts look alike but for noughts after the decimal mark."""
+    return _trimmed(first, decimal_mark) == _trimmed(second, decimal_mark)
+
+
+def _trimmed(text: str, decimal_mark: str) -> str:
+    return text.rstrip("0").rstrip(decimal_mark) if decimal_mark in text else text
+
+
+def _plain(value: float, decimal_mark: str) -> str:
+    return write_plain(round(value, 9), decimal_mark)
 
 
 def limit_words(limit: HouseLimit, decimal_mark: str = ".") -> str:
     """Return the house limit in one sentence."""
-    points = write_number(limit.share_points, 1.0, decimal_mark)
-    scale = figure_words(limit.scale_part, 0, 0, share=True, step=1.0).value
-    number = figure_words(limit.number_part, 0, 0, share=True, step=1.0).value
+    points = _plain(limit.share_points, decimal_mark)
+    scale = _plain(limit.scale_part * 100, decimal_mark)
+    number = _plain(limit.number_part * 100, decimal_mark)
+    note = _plain(limit.note_part * 100, decimal_mark)
     return (
         f"house limit: shares within ±{points}{NO_BREAK}points, averages on a scale within "
         f"±{scale}{NO_BREAK}% of the scale, other figures within ±{number}{NO_BREAK}% of their "
-        f"value, at least {write_count(limit.smallest_base, decimal_mark)} answers"
+        f"value, at least {write_count(limit.smallest_base, decimal_mark)} answers; with a note "
+        f"from {note}{NO_BREAK}% of the limit on"
     )

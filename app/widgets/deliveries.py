@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from contextlib import suppress
 from dataclasses import dataclass
 from pathlib import PurePath
 
 from app.intake import FieldworkFile, Reading, read_fieldwork_file
-from app.store import Database
+from app.store import Database, StoreError
 from app.study.question_guessing import guess_questions
+from app.study.questions import Question
 from app.study.sample_studies import SampleStudy
 from app.study.study import StudyFile
 from app.study.study_changes import carry_over
@@ -52,21 +54,48 @@ def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> D
     read = read_fieldwork_file(data, file_name=name)
     guessed = guess_questions(read.answers, read.question_texts)
     study = study_id or database.create_study(_name_from(name)).id
-    before = database.questions(study)
-    database.add_file(
-        study,
-        data,
-        file_name=name,
-        reading=read.reading.to_json(),
-        rows=len(read.answers),
-        columns=read.answers.shape[1],
-    )
+    try:
+        database.add_file(
+            study,
+            data,
+            file_name=name,
+            reading=read.reading.to_json(),
+            rows=len(read.answers),
+            columns=read.answers.shape[1],
+        )
+        return Delivery(study, _take_over(database, study, guessed))
+    except StoreError:
+        if not study_id:  # a study made for this file goes with it
+            with suppress(StoreError):
+                database.delete_study(study)
+        raise
+
+
+def use_again(database: Database, file: StudyFile) -> Delivery:
+    """Make figures from a file delivered before, read as it was then.
+
+    Raises
+    ------
+    StoreError
+        When its bytes are damaged, or the study is gone; the present file stays.
+    """
+    data = database.file_bytes(file.fingerprint)
+    reading = Reading.from_json(file.reading)
+    read = read_fieldwork_file(data, file_name=file.file_name, reading=reading)
+    guessed = guess_questions(read.answers, read.question_texts)
+    database.make_current(file.id)
+    return Delivery(file.study_id, _take_over(database, file.study_id, guessed))
+
+
+def _take_over(database: Database, study_id: str, guessed: tuple[Question, ...]) -> tuple[str, ...]:
+    """Keep what a file asks, with all that was settled before; return what changed."""
+    before = database.questions(study_id)
     if not before:
-        database.replace_questions(study, guessed)
-        return Delivery(study, ())
+        database.replace_questions(study_id, guessed)
+        return ()
     carried = carry_over(before, guessed)
-    database.replace_questions(study, carried.questions)
-    return Delivery(study, tuple(carried.sentences))
+    database.replace_questions(study_id, carried.questions)
+    return tuple(carried.sentences)
 
 
 def read_again(database: Database, file: StudyFile, reading: Reading) -> FieldworkFile:
@@ -86,8 +115,7 @@ def read_again(database: Database, file: StudyFile, reading: Reading) -> Fieldwo
         rows=len(read.answers),
         columns=read.answers.shape[1],
     )
-    carried = carry_over(database.questions(file.study_id), guessed)
-    database.replace_questions(file.study_id, carried.questions)
+    _take_over(database, file.study_id, guessed)
     return read
 
 

@@ -5,11 +5,11 @@ from __future__ import annotations
 import json
 
 from app.study.figure_requests import FigureRequest, Statistic
-from app.study.figures import default_request, statistics_of
-from app.study.figures import takes_answers as counts_answers
+from app.study.figures import default_request, statistics_of, takes_answers
 from app.study.questions import Question, QuestionKind
 from app.study.study_data import StudyData
 from app.widgets import address
+from app.widgets.plain_text import shortened
 
 LEVELS = (0.9, 0.95, 0.99)
 SHARE_METHODS = ("wilson", "clopper_pearson", "korn_graubard", "wald")
@@ -50,16 +50,43 @@ def from_address(data: StudyData) -> FigureRequest | None:
         return None
     start = default_request(question)
     statistic = _statistic(question, start.statistic)
+    is_group = bool(data.question(address.read("g")) and address.read("ga"))
     return FigureRequest(
         question=question.key,
         statistic=statistic,
         answers=_answers(question, statistic, start),
-        group_question=address.read("g") if data.question(address.read("g")) else "",
-        group_answer=address.read("ga") if data.question(address.read("g")) else "",
+        group_question=address.read("g") if is_group else "",
+        group_answer=address.read("ga") if is_group else "",
         confidence=_level(),
         method=_method(),
-        missing_counted=address.read("dk") == "1" and counts_answers(question, statistic),
+        missing_counted=address.read("dk") == "1" and takes_answers(question, statistic),
         split_by=address.read("by") if data.question(address.read("by")) else "",
+    )
+
+
+def mended_words(request: FigureRequest) -> str:
+    """Return one sentence on what the address names that is not there; "" where all is."""
+    named = {name: address.read(name) for name in ("q", "s", "a", "g", "level", "method")}
+    codes = _list_of(named["a"]) if named["a"].startswith("[") else (named["a"],)
+    there = {
+        "q": request.question,
+        "s": request.statistic.value,
+        "a": named["a"] if not request.answers or set(codes) <= set(request.answers) else "",
+        "g": request.group_question,
+        "level": f"{request.confidence:g}",
+        "method": request.method,
+    }
+    words = {"q": "question", "s": "figure", "a": "answer", "g": "group"}
+    gone = [
+        f"{words.get(name, name)} {shortened(value)}"
+        for name, value in named.items()
+        if value and value != there[name]
+    ]
+    if not gone:
+        return ""
+    return (
+        f"The address names what is not there ({', '.join(gone)}), so another figure is shown: "
+        "choose the one you want."
     )
 
 
@@ -69,7 +96,7 @@ def _statistic(question: Question, default: Statistic) -> Statistic:
 
 
 def _answers(question: Question, statistic: Statistic, start: FigureRequest) -> tuple[str, ...]:
-    if not counts_answers(question, statistic):
+    if not takes_answers(question, statistic):
         return ()
     codes = [a.code for a in question.answers]
     text = address.read("a")
@@ -81,7 +108,7 @@ def _answers(question: Question, statistic: Statistic, start: FigureRequest) -> 
 def _list_of(text: str) -> tuple[str, ...]:
     try:
         values = json.loads(text)
-    except ValueError:
+    except (ValueError, RecursionError):
         return ()
     return tuple(str(v) for v in values) if isinstance(values, list) else ()
 

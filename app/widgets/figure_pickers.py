@@ -8,11 +8,10 @@ import streamlit as st
 
 from app.study.figure_requests import FigureRequest, Statistic
 from app.study.figure_rows import groupings
-from app.study.figures import default_request, statistics_of
+from app.study.figures import default_request, statistics_of, takes_answers
 from app.study.questions import Question
 from app.study.study_data import StudyData
 from app.widgets import address
-from app.widgets.figure_address import counts_answers
 from app.widgets.plain_text import as_typed, shortened
 
 EVERYONE = "everyone"
@@ -40,7 +39,7 @@ def show_pickers(data: StudyData, request: FigureRequest) -> None:
         with second:
             _pick_statistic(question, request)
         with third:
-            if counts_answers(question, request.statistic):
+            if takes_answers(question, request.statistic):
                 _pick_answers(question, request)
         with fourth:
             _pick_group(data, request)
@@ -54,7 +53,7 @@ def _summary(data: StudyData, request: FigureRequest, question: Question) -> str
 
 
 def _pick_question(data: StudyData, question: Question) -> None:
-    usable = {q.key: q for q in data.questions if q.usable}
+    usable = {q.key: q for q in data.questions if q.usable or q is question}
 
     def fresh(key: str) -> dict[str, str]:
         start = default_request(usable[key])

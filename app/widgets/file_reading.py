@@ -17,6 +17,7 @@ from app.widgets.plain_text import as_html
 
 FIRST_ROWS = 20
 FIRST_COLUMNS = 60
+MOST_HEADS = 3
 MOST_REMARKS = 40
 _MARKS = {".": "decimal point", ",": "decimal comma"}
 _DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab", "|": "upright bar"}
@@ -60,48 +61,66 @@ def show_remarks(read: FieldworkFile) -> None:
 
 def show_another_reading(database: Database, file: StudyFile, read: FieldworkFile) -> None:
     """Offer every decision for change; the file itself stays as it came."""
-    reading = read.reading
-    with st.form("another_reading", border=False):
+    reading, name = read.reading, f"{file.id}_{file.version}"
+    draft = f"reading_draft_{file.id}"
+    found = (reading.encoding, reading.delimiter, reading.decimal_mark, reading.header_rows)
+    encoding, delimiter, mark, heads, sentence = st.session_state.get(draft, [*found, ""])
+    with st.form(f"another_reading_{name}", border=False):
         first, second = st.columns(2)
         with first:
-            encoding = _pick("Letters are written in", _ENCODINGS, reading.encoding)
-            delimiter = _pick("Columns are parted by", _DELIMITERS, reading.delimiter)
+            _pick("Letters are written in", _ENCODINGS, encoding, f"encoding_{name}")
+            _pick("Columns are parted by", _DELIMITERS, delimiter, f"delimiter_{name}")
         with second:
-            mark = _pick("Numbers are written with a", _MARKS, reading.decimal_mark)
-            heads = st.number_input(
-                "Rows of column heads", 0, 3, reading.header_rows or 1, key="reading_heads"
-            )
-        if not st.form_submit_button("Read it this way"):
-            return
-    wanted = replace(
+            _pick("Numbers are written with a", _MARKS, mark, f"mark_{name}")
+            heads = 1 if heads is None else int(heads)
+            key = f"heads_{name}"
+            st.session_state.setdefault(key, heads)
+            st.number_input("Rows of column heads", 0, max(MOST_HEADS, heads), key=key)
+        st.form_submit_button(
+            "Read it this way", on_click=_read_this_way, args=(database, file, reading, name)
+        )
+    if sentence:
+        layout.problem(sentence)
+
+
+def _pick(label: str, words: dict[str, str], found: str | None, key: str) -> None:
+    now = found or next(iter(words))
+    st.session_state.setdefault(key, now)
+    options = list(words) if now in words else [now, *words]
+    st.selectbox(label, options, format_func=lambda value: words.get(value, value), key=key)
+
+
+def _read_this_way(database: Database, file: StudyFile, reading: Reading, name: str) -> None:
+    """Read the file as the form says; a refused way stays in the form, with the reason."""
+    parts = ("encoding", "delimiter", "mark", "heads")
+    typed = [st.session_state[f"{part}_{name}"] for part in parts]
+    draft = f"reading_draft_{file.id}"
+    try:
+        read_again(database, file, another_reading(reading, *typed))
+    except (FieldworkFileError, StoreError) as error:
+        st.session_state[draft] = [*typed, str(error)]
+        return
+    st.session_state.pop(draft, None)
+    layout.later("The file was read again; questions and kept figures stay by column name.")
+
+
+def another_reading(
+    reading: Reading, encoding: str, delimiter: str, mark: str, heads: int | None
+) -> Reading:
+    """Return a reading with these decisions; those that rested on others are found out again."""
+    heads = int(heads or 0)
+    same_cells = (encoding, delimiter) == (reading.encoding, reading.delimiter)
+    same_heads = same_cells and heads == reading.header_rows
+    return replace(
         reading,
         encoding=encoding,
         delimiter=delimiter,
+        quote=reading.quote if same_cells else None,
+        escape=reading.escape if same_cells else None,
+        lines_above=reading.lines_above if same_cells else None,
+        left_out=reading.left_out if same_cells else (),
         decimal_mark=mark,
-        header_rows=int(heads or 0),
+        thousands_mark=reading.thousands_mark if mark == reading.decimal_mark else None,
+        header_rows=heads,
+        name_row=reading.name_row if same_heads else None,
     )
-    _read_this_way(database, file, wanted)
-
-
-def _pick(label: str, words: dict[str, str], found: str | None) -> str:
-    now = found or next(iter(words))
-    options = list(words) if now in words else [now, *words]
-    return str(
-        st.selectbox(
-            label,
-            options,
-            index=options.index(now),
-            format_func=lambda value: words.get(value, value),
-            key=f"reading_{label}",
-        )
-    )
-
-
-def _read_this_way(database: Database, file: StudyFile, wanted: Reading) -> None:
-    try:
-        read_again(database, file, wanted)
-    except (FieldworkFileError, StoreError) as error:
-        layout.problem(str(error))
-        return
-    layout.later("The file was read again; questions and kept figures stay by column name.")
-    st.rerun()

@@ -6,7 +6,7 @@ from dataclasses import replace
 
 import streamlit as st
 
-from app.store import Database, StoreError
+from app.store import Database
 from app.study.figure_requests import FigureRequest
 from app.study.figure_rows import groupings
 from app.study.sentences import FigureText
@@ -28,20 +28,13 @@ def show_keep(
             type="primary",
             key="keep",
             width="stretch",
-            on_click=_keep,
-            args=(database, study.id, wanted),
+            on_click=layout.guarded,
+            args=(database.keep_figure, study.id, wanted),
         )
     else:
         _show_kept(database, study, kept)
     with st.popover("Copy the sentence", width="stretch"):
         st.code(text.sentence, language=None, wrap_lines=True)
-
-
-def _keep(database: Database, study_id: str, request: FigureRequest) -> None:
-    try:
-        database.keep_figure(study_id, request)
-    except StoreError as error:
-        layout.later(error.sentence)
 
 
 def _show_kept(database: Database, study: Study, kept: KeptFigure) -> None:
@@ -54,8 +47,8 @@ def _show_kept(database: Database, study: Study, kept: KeptFigure) -> None:
             "Take it out",
             key="unkeep",
             type="tertiary",
-            on_click=database.remove_kept,
-            args=(kept.id,),
+            on_click=layout.guarded,
+            args=(database.remove_kept, kept.id),
         )
 
 

@@ -122,7 +122,7 @@ def store_problem(error: Exception) -> None:
     st.button("Show what is stored now", key="show_stored")
 
 
-def guarded(action: Callable[..., object], *arguments: object) -> bool:
+def attempt(action: Callable[..., object], *arguments: object) -> bool:
     """Do something in the store, for callbacks; what it refuses is said on the next run.
 
     Returns
@@ -136,6 +136,11 @@ def guarded(action: Callable[..., object], *arguments: object) -> bool:
         later(error.sentence)
         return False
     return True
+
+
+def guarded(action: Callable[..., object], *arguments: object) -> None:
+    """Do something in the store as the whole of a callback."""
+    attempt(action, *arguments)
 
 
 def say(text: str, kind: str = "hr-soft") -> None:

@@ -6,7 +6,7 @@ import re
 from html import escape as escape_html
 
 _SPECIAL = re.compile(r"([\\`*_{}\[\]()#+\-.!|~:$<>&\"'/])")
-_ADDRESS = re.compile(r"(?i)\b(https?|ftp|mailto|www)(?=[:.])")
+_ADDRESS = re.compile(r"(?i)(https?|ftp|mailto|xmpp|www|@)(?=[:.\w])")
 _WORD_JOINER = "\u2060"
 
 

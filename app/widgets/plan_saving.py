@@ -46,6 +46,10 @@ class PlanKeeper:
             return False
         return True
 
+    def confirm(self) -> None:
+        """Say that a person has confirmed the plan."""
+        self.save(provisional=False)
+
     def choose(self, key: str, field: str) -> None:
         """Keep what was chosen in a list or box."""
         self.save(**{field: st.session_state[key]})

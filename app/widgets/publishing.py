@@ -6,7 +6,7 @@ from datetime import UTC, datetime, timedelta
 
 import streamlit as st
 
-from app.sharing.frozen_readouts import Draft, FigureError, freeze, moment_words
+from app.sharing.frozen_readouts import Draft, freeze, moment_words
 from app.sharing.link_tokens import hash_token, make_token
 from app.sharing.readout_page import render_page
 from app.sharing.readout_style import READOUT_STYLE
@@ -17,17 +17,19 @@ from app.study.study import KeptFigure, Readout
 from app.study.study_data import StudyData
 from app.widgets import layout
 from app.widgets.plain_text import as_html
+from app.widgets.refusals import checked_length
 from estimators import METHODS_VERSION
 
+MOST_IN_TITLE = 120
 DAYS = {"7": "7 days", "30": "30 days", "90": "90 days", "0": "no end"}
 
 
 def show_publish(database: Database, data: StudyData, kept: tuple[KeptFigure, ...]) -> None:
     """Show title, expiry and the button that publishes."""
-    title = st.text_input(
-        "Title of the readout", data.study.name, key="readout_title", max_chars=120
+    st.text_input(
+        "Title of the readout", data.study.name, key="readout_title", max_chars=MOST_IN_TITLE
     )
-    days = st.selectbox(
+    st.selectbox(
         "The link opens for", list(DAYS), index=1, format_func=DAYS.__getitem__, key="link_days"
     )
     st.button(
@@ -35,38 +37,74 @@ def show_publish(database: Database, data: StudyData, kept: tuple[KeptFigure, ..
         type="primary",
         key="publish",
         on_click=publish,
-        args=(database, data, kept, title, int(days)),
+        args=(database, data, kept),
     )
 
 
-def publish(
+def publish(database: Database, data: StudyData, shown: tuple[KeptFigure, ...]) -> None:
+    """Freeze and keep the readout; the link is put aside to be shown once.
+
+    Title and days are read from their fields: a click may come with a title typed just before.
+    """
+    try:
+        title = checked_length(
+            str(st.session_state["readout_title"]), MOST_IN_TITLE, "The title of the readout"
+        )
+        kept = _as_shown(database, data, shown)
+        days = int(st.session_state["link_days"])
+        link = _freeze(database, data, kept, title or data.study.name, days)
+    except (ValueError, StoreError) as error:
+        layout.later(f"Nothing was published. {error}")
+        return
+    st.session_state["new_link"] = link
+
+
+def _as_shown(
+    database: Database, data: StudyData, shown: tuple[KeptFigure, ...]
+) -> tuple[KeptFigure, ...]:
+    """Return the kept figures with their words as stored now.
+
+    Raises
+    ------
+    ValueError
+        When another window changed what the figures are or rest on.
+    """
+    study_id = data.study.id
+    kept = database.kept_figures(study_id)
+    same = (
+        [(k.id, k.request) for k in kept] == [(k.id, k.request) for k in shown]
+        and database.plan(study_id).plan == data.plan
+        and database.questions(study_id) == data.questions
+        and database.study(study_id).version == data.study.version
+    )
+    if not same:
+        raise ValueError(
+            "The figures, the questions or the plan were changed in another window: look at them "
+            "again, then publish."
+        )
+    return kept
+
+
+def _freeze(
     database: Database, data: StudyData, kept: tuple[KeptFigure, ...], title: str, days: int
-) -> None:
-    """Freeze and keep the readout; the link is put aside to be shown once."""
+) -> list[str]:
+    """Keep the readout and return its id and the token of its link."""
     now = datetime.now(UTC)
     token = make_token()
 
     def make(number: int) -> tuple[str, str]:
-        draft = Draft(title.strip() or data.study.name, number, now)
-        frozen = freeze(data, kept, draft)
+        frozen = freeze(data, kept, Draft(title, number, now))
         return to_json(frozen), render_page(frozen, style_href=READOUT_STYLE.path)
 
-    try:
-        readout = database.publish(
-            data.study.id,
-            make,
-            title=title.strip() or data.study.name,
-            methods_version=METHODS_VERSION,
-            token_hash=hash_token(token),
-            expires_at=now + timedelta(days=days) if days else None,
-        )
-    except FigureError as error:
-        layout.later(f"Nothing was published. {error}")
-        return
-    except StoreError as error:
-        layout.later(f"Nothing was published. {error.sentence}")
-        return
-    st.session_state["new_link"] = [readout.id, token]
+    readout = database.publish(
+        data.study.id,
+        make,
+        title=title,
+        methods_version=METHODS_VERSION,
+        token_hash=hash_token(token),
+        expires_at=now + timedelta(days=days) if days else None,
+    )
+    return [readout.id, token]
 
 
 def show_new_link(readouts: tuple[Readout, ...]) -> None:
@@ -149,21 +187,14 @@ def _show_actions(database: Database, readout: Readout) -> None:
 
 def _new_link(database: Database, readout: Readout) -> None:
     token = make_token()
-    try:
-        database.replace_link(readout.id, hash_token(token), datetime.now(UTC) + timedelta(days=30))
-    except StoreError as error:
-        layout.later(error.sentence)
-        return
-    st.session_state["new_link"] = [readout.id, token]
+    until = datetime.now(UTC) + timedelta(days=30)
+    if layout.attempt(database.replace_link, readout.id, hash_token(token), until):
+        st.session_state["new_link"] = [readout.id, token]
 
 
 def _revoke(database: Database, readout: Readout) -> None:
-    try:
-        database.revoke_readout(readout.id)
-    except StoreError as error:
-        layout.later(error.sentence)
-        return
-    layout.later(
-        f"The link of readout {readout.number} is withdrawn: nobody can open it from now on. "
-        "Copies and files remain."
-    )
+    if layout.attempt(database.revoke_readout, readout.id):
+        layout.later(
+            f"The link of readout {readout.number} is withdrawn: nobody can open it from now on. "
+            "Copies and files remain."
+        )

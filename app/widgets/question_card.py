@@ -2,17 +2,20 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
+from functools import partial
 
 import numpy as np
 import pandas as pd
 import streamlit as st
 
-from app.store import Database, StoredQuestion, StoreError
-from app.study.number_format import NO_BREAK, write_count, write_share
+from app.store import Database, StoredQuestion
+from app.study.number_format import NO_BREAK, write_count, write_number, write_share
 from app.study.question_guessing import guess_questions
 from app.study.question_values import QuestionValues, read_values
 from app.study.questions import Question, QuestionKind
+from app.study.study import Study
 from app.widgets import address, layout
 from app.widgets.plain_text import as_html, as_typed
 
@@ -21,19 +24,19 @@ MOST_BARS = 14
 
 def show_question(
     database: Database,
-    study_id: str,
+    study: Study,
     stored: StoredQuestion,
     questions: tuple[Question, ...],
     answers: pd.DataFrame,
 ) -> None:
     """Show one question with its evidence, its answers and its open proposals."""
-    question = stored.question
+    question, study_id = stored.question, study.id
     st.html(
         f'<h2 class="hw-card-head">{as_html(question.text)}</h2>'
         f'<p class="hr-soft">{as_html(_about(question))}</p>'
     )
     if set(question.columns) <= set(answers.columns):
-        _show_answers(read_values(question, answers))
+        _show_answers(read_values(question, answers), study.decimal_mark)
     else:
         layout.problem("The current file does not have this question; figures on it wait.")
     for number, proposal in enumerate(question.proposals):
@@ -78,15 +81,15 @@ def _show_choice(
     question = stored.question
     left = sum(q.needs_you for q in questions) - 1
     names = [_proposed(question), "as it is in the file"]
-    choice = st.radio("Count it", names, key=f"choice_{question.columns[0]}_{stored.version}")
-    settled = question.settled(accept=choice == names[0])
+    key = f"choice_{question.columns[0]}_{stored.version}"
+    st.radio("Count it", names, key=key)
     label = f"Accept, next ({left})" if left else "Accept"
     st.button(
         label,
         type="primary",
         key="accept",
         on_click=_accept,
-        args=(database, study_id, stored, settled, questions),
+        args=(database, study_id, stored, (key, names[0]), questions),
     )
 
 
@@ -100,9 +103,11 @@ def _accept(
     database: Database,
     study_id: str,
     stored: StoredQuestion,
-    settled: Question,
+    choice: tuple[str, str],
     questions: tuple[Question, ...],
 ) -> None:
+    """Settle the question as the round buttons stand now; `choice` is their key and "yes"."""
+    settled = stored.question.settled(accept=st.session_state[choice[0]] == choice[1])
     if _save(database, study_id, stored, settled):
         address.write(q=_next(stored.question, questions))
 
@@ -116,12 +121,9 @@ def _next(question: Question, questions: tuple[Question, ...]) -> str:
 
 
 def _save(database: Database, study_id: str, stored: StoredQuestion, question: Question) -> bool:
-    try:
-        database.save_question(study_id, question, version=stored.version)
-    except StoreError as error:
-        layout.later(error.sentence)
-        return False
-    return True
+    return layout.attempt(
+        partial(database.save_question, study_id, question, version=stored.version)
+    )
 
 
 def _read_afresh(
@@ -138,34 +140,34 @@ def _read_afresh(
     _save(database, study_id, stored, replace(fresh, key=stored.question.key))
 
 
-def _show_answers(values: QuestionValues) -> None:
+def _show_answers(values: QuestionValues, mark: str) -> None:
     """Show answers as bars in the colour of what people said, with who did not answer."""
     question = values.question
     base = int(values.answered.sum())
     if question.kind in (QuestionKind.NUMBER, QuestionKind.WEIGHT):
-        lines = _number_lines(values, base)
+        lines = _number_lines(values, base, mark)
     elif question.kind in (QuestionKind.TEXT, QuestionKind.IDENTIFIER) or not base:
         lines = ""
     else:
-        lines = _bars(values, base)
+        lines = _bars(values, base, mark)
     missing = " \u00b7 ".join(
-        f"{write_count(int(rows.sum()))} {reason.value}"
+        f"{write_count(int(rows.sum()), mark)} {reason.value}"
         for reason, rows in values.reasons.items()
         if rows.any()
     )
-    counted = (f"{write_count(base)} answered", missing)
+    counted = (f"{write_count(base, mark)} answered", missing)
     text = as_html(" \u00b7 ".join(part for part in counted if part))
     st.html(f'{lines}<p class="hr-soft hr-small">{text}</p>')
 
 
-def _bars(values: QuestionValues, base: int) -> str:
+def _bars(values: QuestionValues, base: int, mark: str) -> str:
     parts = values.chosen[values.answered].sum(axis=0) / base
     most = max(float(parts.max(initial=0)), 0.01)
     shown = list(zip(values.question.answers, parts, strict=True))[:MOST_BARS]
     rows = "".join(
         f'<div class="hw-bar"><span class="hw-bar-name">{as_html(answer.label)}</span>'
         f'<span class="hw-bar-line"><span style="width:{100 * part / most:.1f}%"></span></span>'
-        f'<span class="hw-bar-text">{write_share(part)}{NO_BREAK}%</span></div>'
+        f'<span class="hw-bar-text">{write_share(part, mark)}{NO_BREAK}%</span></div>'
         for answer, part in shown
     )
     more = len(values.question.answers) - len(shown)
@@ -174,12 +176,19 @@ def _bars(values: QuestionValues, base: int) -> str:
     return rows + (f'<p class="hr-soft hr-small">and {more} more answers</p>' if more > 0 else "")
 
 
-def _number_lines(values: QuestionValues, base: int) -> str:
+def _number_lines(values: QuestionValues, base: int, mark: str) -> str:
     if not base:
         return ""
     numbers = values.numbers[values.answered]
-    low, middle, high = np.quantile(numbers, [0, 0.5, 1])
-    return (
-        f'<p class="hr-soft">from {low:,.6g} to {high:,.6g}, median {middle:,.6g}, '
-        f"average {numbers.mean():,.6g}</p>"
-    )
+    ends = [*np.quantile(numbers, [0, 1, 0.5]), numbers.mean()]
+    low, high, middle, average = (_short_number(float(x), mark) for x in ends)
+    return f'<p class="hr-soft">from {low} to {high}, median {middle}, average {average}</p>'
+
+
+def _short_number(number: float, mark: str) -> str:
+    """Write a number to six figures, or all of them before the decimal mark."""
+    if number == 0:
+        return "0"
+    step = 10.0 ** min(0, math.floor(math.log10(abs(number))) - 5)
+    text = write_number(number, step, mark)
+    return text.rstrip("0").rstrip(mark) if step < 1 else text

@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import streamlit as st
 
+from app.store import Database, StoredQuestion
 from app.study.questions import FIGURE_KINDS, Question
-from app.widgets import address
+from app.widgets import address, layout
 from app.widgets.plain_text import as_html, as_typed, shortened
 
 PAGE = 20
@@ -21,6 +24,28 @@ def show_counts(questions: tuple[Question, ...]) -> None:
         f'<p class="hr-counts"><span><b>{need}</b> need you</span>'
         f"<span><b>{understood}</b> understood</span><span><b>{aside}</b> set aside</span></p>"
     )
+
+
+def show_accept_all(database: Database, study_id: str) -> None:
+    """Offer to accept what is proposed for every question, where more than one is open."""
+    open_ones = tuple(s for s in database.stored_questions(study_id) if s.question.needs_you)
+    if len(open_ones) < 2:
+        return
+    st.button(
+        f"Accept all proposals ({len(open_ones)})",
+        key="accept_all",
+        on_click=_accept_all,
+        args=(database, study_id, open_ones),
+    )
+
+
+def _accept_all(database: Database, study_id: str, open_ones: tuple[StoredQuestion, ...]) -> None:
+    settled = [replace(s, question=s.question.settled(accept=True)) for s in open_ones]
+    if layout.attempt(database.save_questions, study_id, settled):
+        layout.later(
+            f"The proposals for {len(settled)} questions are accepted. "
+            "Each card can read its question afresh."
+        )
 
 
 def show_filter(questions: tuple[Question, ...]) -> tuple[Question, ...]:
@@ -69,7 +94,7 @@ def show_list(questions: tuple[Question, ...], chosen: str) -> None:
 def _page_of(questions: tuple[Question, ...], chosen: str) -> int:
     last = (len(questions) - 1) // PAGE
     named = address.read("page")
-    if named.isascii() and named.isdigit():
+    if named.isascii() and named.isdigit() and len(named) <= 6:
         return min(int(named), last)
     place = next((i for i, q in enumerate(questions) if q.key == chosen), 0)
     return place // PAGE
@@ -82,7 +107,7 @@ def _show_row(question: Question, chosen: str) -> None:
         mark = "? " if question.needs_you else ""
         st.button(
             f"{mark}**{name}**" if question.key == chosen else f"{mark}{name}",
-            key=f"question_{question.columns[0]}",
+            key=f"to_question_{question.columns[0]}",
             type="tertiary",
             on_click=address.write,
             kwargs={"q": question.key},

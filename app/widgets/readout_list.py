@@ -9,7 +9,7 @@ import streamlit as st
 from app.charts.rail_svg import rail_html
 from app.charts.verdict_glyphs import verdict_html
 from app.sharing.frozen_readouts import headline_of
-from app.store import Database, StoreError
+from app.store import Database, StoreError, UnknownFigureError
 from app.study.figure_rows import single_row
 from app.study.figures import FigureError, compute_figure
 from app.study.sentences import describe, value_words
@@ -18,6 +18,55 @@ from app.study.study_data import StudyData
 from app.widgets import layout
 from app.widgets.figure_address import to_address
 from app.widgets.plain_text import as_html
+from app.widgets.refusals import checked_length, fill, forget, refuse, show_refusal
+
+MOST_IN_HEADLINE = 160
+MOST_IN_COMMENT = 2000
+
+
+class WordsKeeper:
+    """Keeps headline and comment of one kept figure.
+
+    Parameters
+    ----------
+    database : Database
+        The store.
+    item : KeptFigure
+        As this run of the screen shows it.
+    """
+
+    def __init__(self, database: Database, item: KeptFigure) -> None:
+        self._database = database
+        self._item = item
+
+    def take(self, key: str, field: str) -> None:
+        """Keep what was typed; what cannot be kept stays in its field."""
+        typed = str(st.session_state[key])
+        try:
+            if field == "headline":
+                changed = replace(self._item, headline=_headline(typed))
+            else:
+                changed = replace(self._item, comment=_comment(typed))
+            self._item = self._database.save_kept(changed)
+        except ValueError as error:
+            refuse(key, typed, str(error))
+        except UnknownFigureError:
+            layout.later(
+                f"This figure was taken out in another window. You had typed: \u201c{typed}\u201d"
+            )
+        except StoreError as error:
+            refuse(key, typed, error.sentence, stale=True)
+        else:
+            forget(key)
+
+
+def _headline(typed: str) -> str:
+    return checked_length(typed, MOST_IN_HEADLINE, "The headline")
+
+
+def _comment(typed: str) -> str:
+    checked_length(typed, MOST_IN_COMMENT, "The comment")
+    return typed.strip()
 
 
 def show_kept(database: Database, data: StudyData, kept: tuple[KeptFigure, ...]) -> None:
@@ -39,7 +88,7 @@ def _show_card(database: Database, data: StudyData, item: KeptFigure, *, last: b
             st.button(
                 "Take it out",
                 key=f"out_{item.id}",
-                on_click=_guarded,
+                on_click=layout.guarded,
                 args=(database.remove_kept, item.id),
             )
             query = {k: v for k, v in to_address(item.request).items() if v}
@@ -69,36 +118,29 @@ def _show_figure(data: StudyData, item: KeptFigure) -> None:
 
 def _show_wording(database: Database, data: StudyData, item: KeptFigure) -> None:
     headline, comment = f"headline_{item.id}", f"comment_{item.id}"
+    keeper = WordsKeeper(database, item)
     try:
-        st.session_state[headline] = headline_of(data, item)
+        fill(headline, headline_of(data, item))
     except FigureError:
-        st.session_state[headline] = item.headline
-    st.session_state[comment] = item.comment
+        fill(headline, item.headline)
+    fill(comment, item.comment)
     st.text_input(
         f"{item.position + 1}. Headline",
         key=headline,
-        max_chars=160,
-        on_change=_keep_words,
-        args=(database, item, headline, "headline"),
+        max_chars=MOST_IN_HEADLINE,
+        on_change=keeper.take,
+        args=(headline, "headline"),
     )
+    show_refusal(headline, keeper.take, (headline, "headline"))
     st.text_area(
         "Comment, plain text",
         key=comment,
-        max_chars=2000,
+        max_chars=MOST_IN_COMMENT,
         height=80,
-        on_change=_keep_words,
-        args=(database, item, comment, "comment"),
+        on_change=keeper.take,
+        args=(comment, "comment"),
     )
-
-
-def _keep_words(database: Database, item: KeptFigure, key: str, field: str) -> None:
-    words = str(st.session_state[key])
-    changed = (
-        replace(item, headline=" ".join(words.split()))
-        if field == "headline"
-        else replace(item, comment=words.strip())
-    )
-    _guarded(database.save_kept, changed)
+    show_refusal(comment, keeper.take, (comment, "comment"))
 
 
 def _move(database: Database, item: KeptFigure, label: str, by: int, *, disabled: bool) -> None:
@@ -106,14 +148,6 @@ def _move(database: Database, item: KeptFigure, label: str, by: int, *, disabled
         label,
         key=f"{label}_{item.id}",
         disabled=disabled,
-        on_click=_guarded,
+        on_click=layout.guarded,
         args=(database.move_kept, item.id, item.position + by),
     )
-
-
-def _guarded(action: object, *arguments: object) -> None:
-    """Do something in the store; what it refuses is said on the next run."""
-    try:
-        action(*arguments)  # type: ignore[operator]
-    except StoreError as error:
-        layout.later(error.sentence)

@@ -31,6 +31,11 @@ def forget(key: str) -> None:
     st.session_state.pop(_name(key), None)
 
 
+def is_refused(key: str) -> bool:
+    """Whether something that was not kept stands in a field."""
+    return _name(key) in st.session_state
+
+
 def fill(key: str, stored: str) -> None:
     """Put the stored value into a field, or what was typed and refused."""
     refused = st.session_state.get(_name(key))

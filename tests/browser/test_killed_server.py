@@ -64,7 +64,7 @@ FILE = (
 
 
 def test_a_walk_with_a_kill_after_every_step(mortal):
-    """One story, told in order: each step is confirmed, the server dies, the step is still there."""
+    """One story in order: a step is confirmed, the server dies, the step is still there."""
     page = mortal.page
     an_uploaded_file(mortal, page)
     an_accepted_question(mortal, page)
@@ -111,19 +111,22 @@ TYPED = {
 
 def every_field_of_the_plan(mortal, page) -> None:
     pages.journey(page, "Sampling plan")
-    for key, text in TYPED.items():
-        pages.fill(page, key, text)
+    fields = list(TYPED.items())
+    for two in (fields[:2], fields[2:4], fields[4:]):
+        for key, text in two:
+            pages.fill(page, key, text)
         mortal.kill()
-        assert pages.typed(page, key) == text
+        assert {key: pages.typed(page, key) for key, _ in two} == dict(two)
     page.get_by_text("drawn by chance from a list", exact=True).click()
     pages.idle(page)
     mortal.kill()
     assert page.get_by_role("radio", name="drawn by chance from a list").is_checked()
     pages.choose(page, "plan_strata_column", "region · region")
-    for number, size in enumerate(("500", "400")):
+    sizes = ["500", "400"]
+    for number, size in enumerate(sizes):
         pages.fill(page, f"stratum_{number}_region", size)
-        mortal.kill()
-        assert pages.typed(page, f"stratum_{number}_region") == size
+    mortal.kill()
+    assert [pages.typed(page, f"stratum_{number}_region") for number in (0, 1)] == sizes
     pages.click(page, "Confirm the plan")
     mortal.kill()
     assert page.get_by_text("Confirmed.").first.is_visible()

@@ -39,7 +39,7 @@ def test_what_was_answered_outside_the_base_does_not_matter():
     one, two = answered_base(DESIGN, where, ANSWERED), answered_base(DESIGN, where, other)
     assert one.weights.tolist() == two.weights.tolist()
     assert one.row_weights.tolist() == two.row_weights.tolist()
-    assert one.row_weights == pytest.approx(np.where(where, one.weights, 10.0))
+    assert one.row_weights == pytest.approx(np.where(one.inside, one.weights, DESIGN.weights))
 
 
 def test_given_weights_move_within_strata_in_proportion():
