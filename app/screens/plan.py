@@ -23,7 +23,7 @@ st.title("Sampling plan", anchor=False)
 layout.show_later_message()
 layout.file_first(opened)
 data = opened.data()
-stored = database().plan(opened.study.id)
+stored = opened.plan
 keeper = PlanKeeper(database(), opened.study.id, stored)
 show_effect(data, plan_effect(stored.plan, data.built, data.answers))
 show_problems(data.built.problems)

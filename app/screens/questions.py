@@ -31,8 +31,7 @@ with right, st.container(key="question_card"):
         layout.say("Nothing needs you here. Every question is understood or settled.")
     try:
         stored = database().stored_question(opened.study.id, chosen)
-        answers = read_file(file).answers
-        show_question(database(), opened.study, stored, questions, answers)
+        show_question(database(), opened.study, stored, questions, read_file(file))
         with st.expander("Text, kind, codes and order"):
             show_form(database(), opened.study.id, stored)
     except UnknownQuestionError:

@@ -213,15 +213,17 @@ def _frozen_row(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
 
 def _row_held_back(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
     """Return a row without its figure; a handful of answers is not counted out."""
+    answered = row.figure.counts.answered if row.figure is not None else 0
+    answers = row.answers if answered >= SMALLEST_BAR else _FEW
+    verdict, state = Outcome.HOLD_BACK.value, "held back"
     if row.figure is None:
-        words, state, answers = "held back: too few to show", Outcome.HOLD_BACK.value, _FEW
-    elif row.figure.counts.answered < SMALLEST_BAR:
-        words, state, answers = "hidden to protect respondents", _HIDDEN, _FEW
+        words = f"{state}: too few to show"
+    elif answered < SMALLEST_BAR:
+        words, verdict, state = "hidden to protect respondents", _HIDDEN, _HIDDEN
     else:
-        words = f"held back: {row.figure.verdict.short}"
-        state, answers = Outcome.HOLD_BACK.value, row.answers
+        words = f"{state}: {row.figure.verdict.short}"
     empty = Rail(*ends, 0.0, 0.0, 0.0, False, state, words)
-    return FrozenRow(row.label, "", "", answers, words, state, empty)
+    return FrozenRow(row.label, "", "", answers, words, verdict, empty)
 
 
 def _is_kept_from_clients(figure: Figure) -> bool:

@@ -116,7 +116,9 @@ def compute_figure(
     answered, numbers = _answers(values, request)
     base = answered & where
     if not base.any():
-        raise FigureError(f"Nobody in this group answered {question.text}: choose another group.")
+        raise FigureError(
+            f"Nobody in this group answered \u201c{question.text}\u201d: choose another group."
+        )
     try:
         estimate = _estimate(data.built.design, numbers, where, answered, request)
         endless = _estimate(data.built.endless, numbers, where, answered, request)
@@ -175,7 +177,7 @@ def _usable_question(data: StudyData, key: str) -> Question:
         raise FigureError(f"The current file has no question {key}: choose another question.")
     if not question.usable:
         raise FigureError(
-            f"{question.text} is set aside or holds no answers to count: "
+            f"\u201c{question.text}\u201d is set aside or holds no answers to count: "
             "change that on the Questions screen."
         )
     return question
@@ -185,15 +187,18 @@ def _check_request(question: Question, request: FigureRequest) -> None:
     """Refuse what the question cannot give, such as an average of brands."""
     if request.statistic not in statistics_of(question):
         names = " or ".join(statistic.value for statistic in statistics_of(question))
-        raise FigureError(f"{question.text} has no {request.statistic.value}: choose {names}.")
+        raise FigureError(
+            f"\u201c{question.text}\u201d has no {request.statistic.value}: choose {names}."
+        )
     if not takes_answers(question, request.statistic):
         return
     if not question.answers:
         raise FigureError(
-            f"{question.text} has no answers to choose from: type them on the Questions screen."
+            f"\u201c{question.text}\u201d has no answers to choose from: type them on the "
+            "Questions screen."
         )
     if not request.answers:
-        raise FigureError(f"{question.text}: choose the answer to count.")
+        raise FigureError(f"\u201c{question.text}\u201d: choose the answer to count.")
 
 
 def takes_answers(question: Question, statistic: Statistic) -> bool:
@@ -223,7 +228,9 @@ def members(values: QuestionValues, question: Question, code: str) -> BoolArray:
     """
     codes = [answer.code for answer in question.answers]
     if code not in codes:
-        raise FigureError(f"{question.text} has no answer {code}: choose another group.")
+        raise FigureError(
+            f"\u201c{question.text}\u201d has no answer {code}: choose another group."
+        )
     position = codes.index(code)
     if question.kind is QuestionKind.SEVERAL:
         return np.asarray(values.chosen[:, position], dtype=bool)
@@ -249,7 +256,9 @@ def _chosen(values: QuestionValues, request: FigureRequest) -> BoolArray:
     positions = [i for i, a in enumerate(question.answers) if a.code in request.answers]
     gone = set(request.answers) - {a.code for a in question.answers}
     if gone:
-        raise FigureError(f"{question.text} has no answer {sorted(gone)[0]}: choose another.")
+        raise FigureError(
+            f"\u201c{question.text}\u201d has no answer {sorted(gone)[0]}: choose another."
+        )
     if question.kind is QuestionKind.SEVERAL:
         return np.asarray(values.chosen[:, positions].any(axis=1), dtype=bool)
     return np.isin(values.codes, positions)

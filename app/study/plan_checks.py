@@ -85,13 +85,21 @@ def _number_label(value: float) -> str:
     return str(int(value)) if whole else repr(float(value))
 
 
+def _answers(count: int) -> str:
+    return "1 answer" if count == 1 else f"{write_count(count)} answers"
+
+
+def _have(count: int) -> str:
+    return "has" if count == 1 else "have"
+
+
 def _universe_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
     size, rows = plan.universe_size, len(answers)
     if size is not None and size < rows and not draws_repeat(plan):
         twice = plan.method is SamplingMethod.CHANCE
         yield PlanProblem(
             "universe_size",
-            f"The file has {write_count(rows)} answers but the universe only "
+            f"The file has {_answers(rows)} but the universe only "
             f"{write_count(size)}: correct the universe"
             + (", or say that each could be drawn twice." if twice else "."),
         )
@@ -150,7 +158,7 @@ def _unlabelled_rows(column: str, answers: pd.DataFrame) -> Iterator[PlanProblem
     if blank:
         yield PlanProblem(
             "strata_column",
-            f"{write_count(blank)} answers have no {column}: fill it in the file, or do not "
+            f"{_answers(blank)} {_have(blank)} no {column}: fill it in the file, or do not "
             "separate the draw by it.",
         )
 
@@ -161,13 +169,12 @@ def _stratum_problem(
     if size is None:
         yield PlanProblem(
             "strata",
-            f"{label}: {write_count(rows)} answers but no universe count: "
-            "type it or merge the stratum.",
+            f"{label}: {_answers(rows)} but no universe count: type it or merge the stratum.",
         )
     elif size < rows and not draws_repeat(plan):
         yield PlanProblem(
             "strata",
-            f"{label}: {write_count(rows)} answers but only {write_count(size)} in the universe: "
+            f"{label}: {_answers(rows)} but only {write_count(size)} in the universe: "
             "correct the count.",
         )
 
@@ -204,7 +211,7 @@ def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Pla
     if (blank := int((labels == "").sum())) > 0:
         yield PlanProblem(
             "clusters_column",
-            f"{write_count(blank)} answers have no {column}: fill it in the file, or choose "
+            f"{_answers(blank)} {_have(blank)} no {column}: fill it in the file, or choose "
             "another column.",
         )
     yield from _group_count_problems(plan, int(labels[labels != ""].nunique()))

@@ -79,8 +79,8 @@ def _question_obstacles(data: StudyData, request: FigureRequest) -> list[Obstacl
                 Obstacle(
                     "questions",
                     key,
-                    f"{question.text} is set aside or holds no answers to count: use it again, or "
-                    "take the figure out.",
+                    f"\u201c{question.text}\u201d is set aside or holds no answers to count: "
+                    "use it again, or take the figure out.",
                 )
             )
         elif question.needs_you:
@@ -88,8 +88,8 @@ def _question_obstacles(data: StudyData, request: FigureRequest) -> list[Obstacl
                 Obstacle(
                     "questions",
                     key,
-                    f"{question.text}: {question.proposals[0].evidence} Accept or turn down "
-                    "the proposal first.",
+                    f"\u201c{question.text}\u201d: {question.proposals[0].evidence} Accept or "
+                    "turn down the proposal first.",
                 )
             )
     return found

@@ -5,7 +5,6 @@ Keys are texts that name their content completely; arrays and tables are never h
 
 from __future__ import annotations
 
-import json
 from dataclasses import replace
 from datetime import UTC, datetime
 from pathlib import Path
@@ -13,9 +12,8 @@ from pathlib import Path
 import streamlit as st
 
 from app.intake import FieldworkFile, Reading, read_fieldwork_file
-from app.store import Database, open_database
+from app.store import Database, StoredPlan, StoredQuestion, open_database
 from app.study.questions import Question
-from app.study.records import from_json, from_record, to_json
 from app.study.sampling_plan import SamplingPlan
 from app.study.study import Study, StudyFile
 from app.study.study_data import StudyData, prepare_study
@@ -52,20 +50,25 @@ def _read(fingerprint: str, file_name: str, reading: str) -> FieldworkFile:
     return read_fieldwork_file(data, file_name=file_name, reading=Reading.from_json(reading))
 
 
-def study_data(study: Study, file: StudyFile) -> StudyData:
-    """Return a study ready to compute with, as it is stored now."""
-    questions = database().questions(study.id)
-    plan = database().plan(study.id).plan
-    data = _prepare(
-        file.fingerprint, file.file_name, file.reading, to_json(list(questions)), to_json(plan)
-    )
+def study_data(
+    study: Study, file: StudyFile, asked: tuple[StoredQuestion, ...], stored: StoredPlan
+) -> StudyData:
+    """Return a study ready to compute with, from its questions and its plan as stored now."""
+    versions = " ".join(f"{len(q.question.key)}:{q.question.key}:{q.version}" for q in asked)
+    name = f"{study.id} {stored.version} {versions}"
+    questions = tuple(q.question for q in asked)
+    data = _prepare(name, file.fingerprint, file.file_name, file.reading, questions, stored.plan)
     return replace(data, study=study)
 
 
 @st.cache_resource(max_entries=8, show_spinner="Preparing the study")
 def _prepare(
-    fingerprint: str, file_name: str, reading: str, questions: str, plan: str
+    name: str,  # noqa: ARG001 - names the questions and the plan, which are not hashed
+    fingerprint: str,
+    file_name: str,
+    reading: str,
+    _questions: tuple[Question, ...],
+    _plan: SamplingPlan,
 ) -> StudyData:
     read = _read(fingerprint, file_name, reading)
-    asked = tuple(from_record(Question, record) for record in json.loads(questions))
-    return prepare_study(_NOBODY, asked, from_json(SamplingPlan, plan), read.answers)
+    return prepare_study(_NOBODY, _questions, _plan, read.answers)

@@ -68,10 +68,11 @@ def mended_words(request: FigureRequest) -> str:
     """Return one sentence on what the address names that is not there; "" where all is."""
     named = {name: address.read(name) for name in ("q", "s", "a", "g", "level", "method")}
     codes = _list_of(named["a"]) if named["a"].startswith("[") else (named["a"],)
+    is_answered = not request.answers or bool(codes) and set(codes) <= set(request.answers)
     there = {
         "q": request.question,
         "s": request.statistic.value,
-        "a": named["a"] if not request.answers or set(codes) <= set(request.answers) else "",
+        "a": named["a"] if is_answered else "",
         "g": request.group_question,
         "level": f"{request.confidence:g}",
         "method": request.method,

@@ -8,7 +8,7 @@ from typing import NoReturn
 
 import streamlit as st
 
-from app.store import StoreError, UnknownStudyError
+from app.store import StoredPlan, StoredQuestion, StoreError, UnknownStudyError
 from app.study.figure_requests import FigureRequest
 from app.study.publishing import Obstacle, obstacles_of
 from app.study.questions import Question
@@ -33,13 +33,21 @@ class OpenStudy:
         The study.
     file : StudyFile or None
         The file figures are made from; None before one arrived.
-    questions : tuple of Question
-        As stored.
+    asked : tuple of StoredQuestion
+        Its questions.
+    plan : StoredPlan
+        How people got in.
     """
 
     study: Study
     file: StudyFile | None
-    questions: tuple[Question, ...]
+    asked: tuple[StoredQuestion, ...]
+    plan: StoredPlan
+
+    @property
+    def questions(self) -> tuple[Question, ...]:
+        """The questions without their versions."""
+        return tuple(stored.question for stored in self.asked)
 
     @property
     def needs_you(self) -> int:
@@ -50,7 +58,7 @@ class OpenStudy:
         """Return the study ready to compute with; only for studies with a file."""
         if self.file is None:
             raise ValueError("a study without a file has nothing to compute with")
-        return study_data(self.study, self.file)
+        return study_data(self.study, self.file, self.asked, self.plan)
 
 
 def dress() -> None:
@@ -65,7 +73,13 @@ def open_study() -> OpenStudy:
         study = database().study(study_id)
     except UnknownStudyError:
         _no_study(study_id)
-    return OpenStudy(study, database().current_file(study.id), database().questions(study.id))
+    store = database()
+    return OpenStudy(
+        study,
+        store.current_file(study_id),
+        store.stored_questions(study_id),
+        store.plan(study_id),
+    )
 
 
 def _no_study(study_id: str) -> NoReturn:
@@ -82,12 +96,11 @@ def journey(current: str, opened: OpenStudy) -> None:
     """Show the way through the study, in the order of the work, with a mark for "needs you"."""
     query = {"study": opened.study.id}
     kept = len(database().kept_figures(opened.study.id))
-    plan = database().plan(opened.study.id).plan
     needs = f" \u00b7 {opened.needs_you} need you" if opened.needs_you else ""
     steps = (
         ("file", "Fieldwork file", ""),
         ("questions", "Questions", needs),
-        ("plan", "Sampling plan", " \u00b7 provisional" if plan.provisional else ""),
+        ("plan", "Sampling plan", " \u00b7 provisional" if opened.plan.plan.provisional else ""),
         ("figure", "Figure", ""),
         ("readouts", "Readout", f" \u00b7 {kept} kept" if kept else ""),
     )

@@ -17,10 +17,9 @@ from app.study.sampling_plan import SamplingMethod, StratumCount
 from app.widgets import layout
 from app.widgets.plan_saving import PlanKeeper
 from app.widgets.plan_strata import show_strata
-from app.widgets.refusals import checked_length, fill, show_refusal
+from app.widgets.refusals import fill, show_refusal
 
 NONE = "none"
-MOST_LETTERS = 120
 
 _CONSEQUENCES = {
     SamplingMethod.CHANCE: "Every unit on a list had a known chance. The size of the universe "
@@ -83,7 +82,7 @@ def _text(
     fill(key, stored)
 
     def read(value: str) -> str:
-        text = checked_length(value, MOST_LETTERS, label)
+        text = " ".join(str(value).split())
         if needed and not text:
             raise ValueError(f"{label}: type a word such as \u201c{example}\u201d.")
         return text
@@ -94,7 +93,7 @@ def _text(
         on_change=keeper.take,
         args=(key, field, read),
         placeholder=f"such as {example}",
-        max_chars=MOST_LETTERS,
+        max_chars=120,
     )
     show_refusal(key, keeper.take, (key, field, read))
 

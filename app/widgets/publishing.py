@@ -17,18 +17,14 @@ from app.study.study import KeptFigure, Readout
 from app.study.study_data import StudyData
 from app.widgets import layout
 from app.widgets.plain_text import as_html
-from app.widgets.refusals import checked_length
 from estimators import METHODS_VERSION
 
-MOST_IN_TITLE = 120
 DAYS = {"7": "7 days", "30": "30 days", "90": "90 days", "0": "no end"}
 
 
 def show_publish(database: Database, data: StudyData, kept: tuple[KeptFigure, ...]) -> None:
     """Show title, expiry and the button that publishes."""
-    st.text_input(
-        "Title of the readout", data.study.name, key="readout_title", max_chars=MOST_IN_TITLE
-    )
+    st.text_input("Title of the readout", data.study.name, key="readout_title", max_chars=120)
     st.selectbox(
         "The link opens for", list(DAYS), index=1, format_func=DAYS.__getitem__, key="link_days"
     )
@@ -47,9 +43,7 @@ def publish(database: Database, data: StudyData, shown: tuple[KeptFigure, ...]) 
     Title and days are read from their fields: a click may come with a title typed just before.
     """
     try:
-        title = checked_length(
-            str(st.session_state["readout_title"]), MOST_IN_TITLE, "The title of the readout"
-        )
+        title = " ".join(str(st.session_state["readout_title"]).split())
         kept = _as_shown(database, data, shown)
         days = int(st.session_state["link_days"])
         link = _freeze(database, data, kept, title or data.study.name, days)

@@ -7,9 +7,9 @@ from dataclasses import replace
 from functools import partial
 
 import numpy as np
-import pandas as pd
 import streamlit as st
 
+from app.intake import FieldworkFile
 from app.store import Database, StoredQuestion
 from app.study.number_format import NO_BREAK, write_count, write_number, write_share
 from app.study.question_guessing import guess_questions
@@ -27,10 +27,10 @@ def show_question(
     study: Study,
     stored: StoredQuestion,
     questions: tuple[Question, ...],
-    answers: pd.DataFrame,
+    read: FieldworkFile,
 ) -> None:
     """Show one question with its evidence, its answers and its open proposals."""
-    question, study_id = stored.question, study.id
+    question, study_id, answers = stored.question, study.id, read.answers
     st.html(
         f'<h2 class="hw-card-head">{as_html(question.text)}</h2>'
         f'<p class="hr-soft">{as_html(_about(question))}</p>'
@@ -58,7 +58,7 @@ def show_question(
             "Undo: read it afresh from the file",
             key="read_afresh",
             on_click=_read_afresh,
-            args=(database, study_id, stored, answers),
+            args=(database, study_id, stored, read),
         )
 
 
@@ -127,13 +127,12 @@ def _save(database: Database, study_id: str, stored: StoredQuestion, question: Q
 
 
 def _read_afresh(
-    database: Database, study_id: str, stored: StoredQuestion, answers: pd.DataFrame
+    database: Database, study_id: str, stored: StoredQuestion, read: FieldworkFile
 ) -> None:
-    columns = [c for c in stored.question.columns if c in answers]
-    texts = {c: stored.question.text for c in columns if len(columns) == 1}
-    fresh = next(
-        (q for q in guess_questions(answers[columns], texts) if q.columns == tuple(columns)), None
-    )
+    """Put the guess of the file back; the whole file is read, for columns explain each other."""
+    columns = set(stored.question.columns) & set(read.answers.columns)
+    guesses = guess_questions(read.answers, read.question_texts)
+    fresh = next((q for q in guesses if columns and columns <= set(q.columns)), None)
     if fresh is None:
         layout.later("This question cannot be read afresh: the file has lost its columns.")
         return

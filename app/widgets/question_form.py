@@ -17,11 +17,9 @@ from app.study.questions import (
     QuestionKind,
 )
 from app.widgets import layout
-from app.widgets.refusals import checked_length
 
 _SPLIT = " = "
 _PARTS = ("text", "kind", "answers", "missing")
-MOST_IN_TEXT = 500
 
 
 def show_form(database: Database, study_id: str, stored: StoredQuestion) -> None:
@@ -52,7 +50,7 @@ def _as_stored(question: Question) -> tuple[str, QuestionKind, str, str]:
 
 
 def _show_fields(question: Question, name: str) -> None:
-    st.text_input("Question as asked", max_chars=MOST_IN_TEXT, key=f"text_{name}")
+    st.text_input("Question as asked", max_chars=500, key=f"text_{name}")
     st.selectbox("Kind", _kinds(question), format_func=lambda k: k.value, key=f"kind_{name}")
     st.text_area("Answers in order, one a line: code = label", height=180, key=f"answers_{name}")
     st.text_area(
@@ -68,7 +66,6 @@ def _save(database: Database, study_id: str, stored: StoredQuestion, name: str) 
     text, kind, answers, missing = typed = [st.session_state[f"{part}_{name}"] for part in _PARTS]
     draft = f"draft_{study_id}_{stored.question.key}"
     try:
-        text = checked_length(text, MOST_IN_TEXT, "The question")
         changed = edited(stored.question, text, kind, answers, missing)
         database.save_question(study_id, changed, version=stored.version)
     except (StoreError, ValueError) as error:

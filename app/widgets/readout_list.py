@@ -18,10 +18,7 @@ from app.study.study_data import StudyData
 from app.widgets import layout
 from app.widgets.figure_address import to_address
 from app.widgets.plain_text import as_html
-from app.widgets.refusals import checked_length, fill, forget, refuse, show_refusal
-
-MOST_IN_HEADLINE = 160
-MOST_IN_COMMENT = 2000
+from app.widgets.refusals import fill, forget, refuse, show_refusal
 
 
 class WordsKeeper:
@@ -44,12 +41,10 @@ class WordsKeeper:
         typed = str(st.session_state[key])
         try:
             if field == "headline":
-                changed = replace(self._item, headline=_headline(typed))
+                changed = replace(self._item, headline=" ".join(typed.split()))
             else:
-                changed = replace(self._item, comment=_comment(typed))
+                changed = replace(self._item, comment=typed.strip())
             self._item = self._database.save_kept(changed)
-        except ValueError as error:
-            refuse(key, typed, str(error))
         except UnknownFigureError:
             layout.later(
                 f"This figure was taken out in another window. You had typed: \u201c{typed}\u201d"
@@ -58,15 +53,6 @@ class WordsKeeper:
             refuse(key, typed, error.sentence, stale=True)
         else:
             forget(key)
-
-
-def _headline(typed: str) -> str:
-    return checked_length(typed, MOST_IN_HEADLINE, "The headline")
-
-
-def _comment(typed: str) -> str:
-    checked_length(typed, MOST_IN_COMMENT, "The comment")
-    return typed.strip()
 
 
 def show_kept(database: Database, data: StudyData, kept: tuple[KeptFigure, ...]) -> None:
@@ -127,7 +113,7 @@ def _show_wording(database: Database, data: StudyData, item: KeptFigure) -> None
     st.text_input(
         f"{item.position + 1}. Headline",
         key=headline,
-        max_chars=MOST_IN_HEADLINE,
+        max_chars=160,
         on_change=keeper.take,
         args=(headline, "headline"),
     )
@@ -135,7 +121,7 @@ def _show_wording(database: Database, data: StudyData, item: KeptFigure) -> None
     st.text_area(
         "Comment, plain text",
         key=comment,
-        max_chars=MOST_IN_COMMENT,
+        max_chars=2000,
         height=80,
         on_change=keeper.take,
         args=(comment, "comment"),

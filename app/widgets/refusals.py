@@ -62,22 +62,6 @@ def show_refusal(key: str, again: Callable[..., None], arguments: Sequence[objec
             st.button("Take what is stored", key=f"drop_{key}", on_click=forget, args=(key,))
 
 
-def checked_length(text: str, most: int, what: str) -> str:
-    """Return text on one line.
-
-    Raises
-    ------
-    ValueError
-        When it is too long; the browser stops at the limit, other ways in do not.
-    """
-    text = " ".join(text.split())
-    if len(text) > most:
-        raise ValueError(
-            f"{what}: {len(text):,} characters are too many, at most {most:,} fit: shorten it."
-        )
-    return text
-
-
 def _name(key: str) -> str:
     """Return where it is remembered: fields of two studies carry the same key."""
     return f"refused_{address.read('study')}_{key}"

@@ -11,9 +11,8 @@ from app.study.number_format import write_count
 from app.study.study import Study
 from app.widgets import layout
 from app.widgets.plain_text import as_typed
-from app.widgets.refusals import checked_length, fill, forget, is_refused, refuse, show_refusal
+from app.widgets.refusals import fill, forget, is_refused, refuse, show_refusal
 
-MOST_IN_NAME = 120
 _ASKED = "asked_of_study"  # what was asked for, and of which study: ["delete", id]
 
 
@@ -90,9 +89,7 @@ def _show_rename(database: Database, study: Study) -> None:
     key = f"name_{study.id}"
     fill(key, study.name)
     keep = (database, study, key)
-    st.text_input(
-        "Name of the study", key=key, max_chars=MOST_IN_NAME, on_change=_rename, args=keep
-    )
+    st.text_input("Name of the study", key=key, max_chars=120, on_change=_rename, args=keep)
     show_refusal(key, _rename, keep)
     st.button("Done", key=f"done_{study.id}", on_click=_end_rename, args=(key, is_refused(key)))
 
@@ -100,7 +97,7 @@ def _show_rename(database: Database, study: Study) -> None:
 def _rename(database: Database, study: Study, key: str) -> None:
     typed = str(st.session_state[key])
     try:
-        name = checked_length(typed, MOST_IN_NAME, "The name of the study")
+        name = " ".join(typed.split())
         if not name:
             raise ValueError("The study has no name: type one your colleagues will recognise.")
         if name != study.name:

@@ -119,7 +119,7 @@ class Window:
         self.test.file_uploader[0].upload(name, data, "application/octet-stream")
         return self.run()
 
-    def keys(self) -> set[str]:
+    def buttons(self) -> set[str]:
         """Return the keys of all buttons."""
         return {b.key for b in self.test.button}
 
