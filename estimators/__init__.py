@@ -5,23 +5,34 @@ Arrays in, frozen results out. Every method is named after its published source 
 
 from __future__ import annotations
 
+from estimators.detectable_difference import detectable_difference
+from estimators.differences import difference, difference_of
 from estimators.errors import InputError
+from estimators.interval_coverage import mean_coverage, proportion_coverage, simulation_error
 from estimators.mean_intervals import mean_interval
 from estimators.means_and_totals import mean, ratio, total
+from estimators.p_value_adjustment import adjust_p_values
 from estimators.proportion_intervals import proportion_interval
 from estimators.proportions import proportion
 from estimators.quantiles import quantile
-from estimators.results import Caution, Estimate, Interval
+from estimators.results import Caution, Difference, Estimate, Interval
 from estimators.sample_designs import SampleDesign
 from estimators.sampling_distributions import (
     SamplingDistribution,
     mean_distribution,
     total_distribution,
 )
+from estimators.skewed_mean_intervals import (
+    bootstrap_t_interval,
+    sample_skewness,
+    skewed_mean_interval,
+    skewness_caution,
+)
 from estimators.stratified_distributions import (
     stratified_mean_distribution,
     stratified_total_distribution,
 )
+from estimators.summaries import stratified_mean
 from estimators.universes import Universe, plug_in_universe
 
 METHODS_VERSION = 1
@@ -29,20 +40,33 @@ METHODS_VERSION = 1
 __all__ = [
     "METHODS_VERSION",
     "Caution",
+    "Difference",
     "Estimate",
     "InputError",
     "Interval",
     "SampleDesign",
     "SamplingDistribution",
     "Universe",
+    "adjust_p_values",
+    "bootstrap_t_interval",
+    "detectable_difference",
+    "difference",
+    "difference_of",
     "mean",
+    "mean_coverage",
     "mean_distribution",
     "mean_interval",
     "plug_in_universe",
     "proportion",
+    "proportion_coverage",
     "proportion_interval",
     "quantile",
     "ratio",
+    "sample_skewness",
+    "simulation_error",
+    "skewed_mean_interval",
+    "skewness_caution",
+    "stratified_mean",
     "stratified_mean_distribution",
     "stratified_total_distribution",
     "total",

@@ -37,6 +37,11 @@ NO_VARIATION = Caution(
     "The answers do not differ, so they cannot show how far this figure may be off; as not "
     "everybody was asked, some error remains.",
 )
+NO_VARIATION_ON_ONE_SIDE = Caution(
+    "no_variation",
+    "On one side of this difference all answers are the same, so they cannot show how far it may "
+    "be off; as not everybody was asked, some error remains.",
+)
 SECOND_STAGE_NOT_MEASURED = Caution(
     "second_stage_not_measured",
     "In some strata every drawn cluster has only one respondent: the interval is computed as if "
@@ -55,6 +60,12 @@ HEAVY_TIES = Caution(
 BEYOND_THE_ANSWERS = Caution(
     "beyond_the_answers",
     "The group is too small to set a limit on both sides of this figure: use a larger group.",
+)
+SKEWED_ANSWERS = Caution(
+    "skewed_answers",
+    "A few answers lie far from all others and pull this figure, and there are too few answers "
+    "to even that out: the truth lies outside the interval more often than stated, mostly on the "
+    "side of those few.",
 )
 DENOMINATOR_ZERO = Caution(
     "denominator_zero",

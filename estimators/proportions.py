@@ -94,6 +94,7 @@ def proportion(
         effective_base=precision.effective_base,
         equivalent_base=precision.equivalent_base,
         cautions=_cautions(precision, base),
+        most_units=None if math.isnan(most := _most_units(base)) else int(most),
     )
 
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -15,6 +14,9 @@ _ENTRIES = 2_000_000  # numbers held at a time
 _COUNTING = 8  # a drawn count of one value takes as long as this many drawn units
 _MOST_UNITS = 10**9  # the generator counts no further without replacement
 _ROUNDING = 1e-13  # a sum of squared deviations this small next to its parts is a rounding error
+_FOR_SKEWNESS = 3  # answers
+
+Shape = tuple[int, int]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -70,6 +72,7 @@ def repeat_samples(
         If a number is not whole, n exceeds the universe without replacement, or an endless
         universe or one of 1,000,000,000 units or more is to be drawn from without replacement.
     """
+    n = as_count(n, "n")
     _check_draws(universe, n, replacement=replacement)
     left = as_count(repetitions, "repetitions")
     chance = np.random.default_rng(as_count(seed, "seed", least=0))
@@ -93,11 +96,7 @@ def _scaled_values(universe: Universe) -> Floats:
 
 
 def _sums_from_counts(
-    universe: Universe,
-    values: Floats,
-    shape: tuple[int, int],
-    chance: np.random.Generator,
-    replacement: bool,
+    universe: Universe, values: Floats, shape: Shape, chance: np.random.Generator, replacement: bool
 ) -> Floats:
     """(3, r) mean, and sums of squared and cubed deviations, from how often each value came."""
     repetitions, n = shape
@@ -107,32 +106,62 @@ def _sums_from_counts(
         drawn = chance.multivariate_hypergeometric(
             universe.counts, n, size=repetitions, method="marginals"
         )
-    first, second, third = drawn.astype(float) @ np.stack([values, values**2, values**3], 1) @ _ONES
+    first, second, third = (drawn @ np.stack([values, values**2, values**3], axis=1)).T
     mean = first / n
-    squares = second - n * mean**2
-    squares[squares < _ROUNDING * second] = 0.0
+    squares = _without_noise(second - n * mean**2, second)
     return np.stack([mean, squares, third - 3 * mean * second + 2 * n * mean**3])
 
 
 def _sums_from_units(
-    universe: Universe,
-    values: Floats,
-    shape: tuple[int, int],
-    chance: np.random.Generator,
-    replacement: bool,
+    universe: Universe, values: Floats, shape: Shape, chance: np.random.Generator, replacement: bool
 ) -> Floats:
     """(3, r) mean, and sums of squared and cubed deviations, from the units themselves."""
     repetitions, n = shape
     if replacement:
         units = chance.integers(universe.size, size=shape)
     else:
-        one: Callable[[], np.ndarray] = lambda: chance.choice(
-            universe.size, n, replace=False, shuffle=False
-        )
-        units = np.stack([one() for _ in range(repetitions)])
+        units = np.empty(shape, dtype=np.int64)
+        for row in range(repetitions):
+            units[row] = chance.choice(universe.size, n, replace=False, shuffle=False)
     numbers = values[np.searchsorted(np.cumsum(universe.counts), units, side="right")]
     mean = numbers.mean(axis=1)
     numbers -= mean[:, None]
-    squares = np.einsum("ij,ij->i", numbers, numbers)
-    squares[squares < _ROUNDING * n * mean**2] = 0.0
-    return np.stack([mean, squares, np.einsum("ij,ij,ij->i", numbers, numbers, numbers)])
+    powers = numbers * numbers
+    squares = _without_noise(powers.sum(axis=1), n * mean**2)
+    return np.stack([mean, squares, np.einsum("ij,ij->i", powers, numbers)])
+
+
+def _without_noise(squares: Floats, scale: Floats) -> Floats:
+    """Return sums of squared deviations, exactly 0 where they are rounding errors."""
+    return np.where(squares <= _ROUNDING * scale, 0.0, squares)
+
+
+def _moments(sums: Floats, n: int) -> RepeatedSamples:
+    """From sums of deviations to standard deviation and skewness (k-statistics)."""
+    mean, squares, cubes = sums
+    deviation = np.sqrt(squares / (n - 1)) if n > 1 else np.full(mean.shape, np.nan)
+    skewness = np.zeros(mean.shape)
+    if n >= _FOR_SKEWNESS:
+        varies = squares > 0
+        third = cubes[varies] * n / ((n - 1) * (n - 2))
+        skewness[varies] = third / deviation[varies] ** 3
+    return RepeatedSamples(mean, deviation, skewness)
+
+
+def _check_draws(universe: Universe, n: int, *, replacement: bool) -> None:
+    if replacement:
+        return
+    if universe.endless or universe.size >= _MOST_UNITS:
+        raise InputError(
+            "replacement",
+            replacement,
+            f"must be True for an endless universe and one of {_MOST_UNITS:,} units or more",
+            "draw with replacement, or give a universe with fewer units",
+        )
+    if n > universe.size:
+        raise InputError(
+            "n",
+            n,
+            f"must be at most the {universe.size} units of the universe",
+            "draw fewer, or draw with replacement",
+        )

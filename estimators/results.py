@@ -73,6 +73,9 @@ class Estimate:
         Answers of a simple random sample from an endless universe that would be as precise.
     cautions : tuple of Caution
         What a reader has to know.
+    most_units : int or None
+        Of a share whose rows each speak for the same number of units: how many units the figure
+        can be about at most.
     """
 
     value: float
@@ -85,6 +88,7 @@ class Estimate:
     effective_base: float
     equivalent_base: float
     cautions: tuple[Caution, ...] = ()
+    most_units: int | None = None
 
     @property
     def half_width(self) -> float:
@@ -97,3 +101,21 @@ class Estimate:
         if self.value == 0:
             return math.nan
         return self.standard_error / abs(self.value)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Difference(Estimate):
+    """First figure minus second figure, with its interval and the test of no difference.
+
+    The fields are those of :class:`Estimate`. ``base`` counts the rows with an answer on either
+    side, each once, and ``weighted_base`` their weights. A difference has no base of its own that
+    could be reduced: ``effective_base`` and ``equivalent_base`` are NaN.
+
+    Parameters
+    ----------
+    p_value : float
+        Chance of a difference at least as large in either direction if there were none; NaN where
+        the sample cannot say.
+    """
+
+    p_value: float

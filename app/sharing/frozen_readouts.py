@@ -35,6 +35,7 @@ from estimators import METHODS_VERSION
 
 SMALLEST_BAR = 5  # answers; common practice for tables that leave the house, no single source
 _HIDDEN = "hidden"
+_PROTECTED = "hidden to protect respondents"
 _FEW = f"under {SMALLEST_BAR}"
 _FEW_LINE = f"fewer than {SMALLEST_BAR} answered"
 
@@ -128,7 +129,7 @@ def _section(data: StudyData, item: KeptFigure, figure: Figure) -> FrozenFigure:
         column_head=_column_head(figure, rows),
         axis_low_text=_axis_text(data, figure, low=True),
         axis_high_text=_axis_text(data, figure, low=False),
-        rows=tuple(_frozen_row(row, ends) for row in rows),
+        rows=_without_the_next(rows, tuple(_frozen_row(row, ends) for row in rows)),
         fan=fan,
         base_line=text.base_line if figure.counts.answered >= SMALLEST_BAR else _FEW_LINE,
         cautions=tuple(caution.sentence for caution in figure.estimate.cautions),
@@ -211,6 +212,23 @@ def _frozen_row(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
     )
 
 
+def _without_the_next(
+    rows: tuple[FigureRow, ...], frozen: tuple[FrozenRow, ...]
+) -> tuple[FrozenRow, ...]:
+    """Hide the smallest group shown where one hidden alone could be told by subtraction."""
+    closed = [i for i in range(1, len(rows)) if not frozen[i].value]
+    shown = [i for i in range(1, len(rows)) if frozen[i].value]
+    if len(closed) != 1 or frozen[closed[0]].verdict != _HIDDEN or not shown:
+        return frozen
+    figures = [row.figure for row in rows]
+    sizes = {i: figure.counts.answered for i in shown if (figure := figures[i]) is not None}
+    next_ = min(sizes, key=sizes.__getitem__)
+    row = frozen[next_]
+    rail = Rail(row.rail.axis_low, row.rail.axis_high, 0.0, 0.0, 0.0, False, _HIDDEN, _PROTECTED)
+    hidden = FrozenRow(row.who, "", "", row.answers, _PROTECTED, _HIDDEN, rail)
+    return tuple(hidden if i == next_ else kept for i, kept in enumerate(frozen))
+
+
 def _row_held_back(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
     """Return a row without its figure; a handful of answers is not counted out."""
     answered = row.figure.counts.answered if row.figure is not None else 0
@@ -219,7 +237,7 @@ def _row_held_back(row: FigureRow, ends: tuple[float, float]) -> FrozenRow:
     if row.figure is None:
         words = f"{state}: too few to show"
     elif answered < SMALLEST_BAR:
-        words, verdict, state = "hidden to protect respondents", _HIDDEN, _HIDDEN
+        words, verdict, state = _PROTECTED, _HIDDEN, _HIDDEN
     else:
         words = f"{state}: {row.figure.verdict.short}"
     empty = Rail(*ends, 0.0, 0.0, 0.0, False, state, words)
@@ -268,8 +286,7 @@ def _short_sentence(section: FrozenFigure) -> str:
 
 def _held_back(sections: tuple[FrozenFigure, ...]) -> tuple[str, ...]:
     return tuple(
-        f"\u201c{section.headline.rstrip(' .')}\u201d, {row.who}: "
-        f"{row.note.removeprefix('held back: ')}."
+        f"{row.who}: {row.note.removeprefix('held back: ')} ({section.headline.rstrip(' .')})."
         for section in sections
         for row in section.rows
         if not row.value

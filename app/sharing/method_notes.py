@@ -147,8 +147,8 @@ def _weights(data: StudyData) -> str:
         return f"Weights as delivered with the file, column {data.plan.weights_column}."
     if weighted_by_stratum(data):
         return (
-            f"Each answer counts for as many {data.plan.unit_many} as its {strata_name(data)} has "
-            "in the universe for each answer."
+            f"Each answer stands for its part of all {data.plan.unit_many} with the same "
+            f"{strata_name(data)}."
         )
     return "None: every answer counts the same."
 
@@ -160,8 +160,12 @@ def _precision(data: StudyData, figures: list[Figure]) -> str:
     level = " and ".join(
         f"{write_plain(round(x * 100, 6), _mark(data))}{NO_BREAK}%" for x in levels
     )
-    names = " and ".join(dict.fromkeys(method_name(f) for f in figures))
+    names = _listed(list(dict.fromkeys(method_name(f) for f in figures)))
     return f"Intervals at the {level} level, by {names}. {_universe_counted(data)}"
+
+
+def _listed(words: list[str]) -> str:
+    return " and ".join(([", ".join(words[:-1])] if words[1:] else []) + words[-1:])
 
 
 def _universe_counted(data: StudyData) -> str:

@@ -28,6 +28,7 @@ _SMOOTH_PARTS = 80  # of the curve of a law with too many values for steps
 _FEWEST_PARTS = 9
 _MIDDLE = 2.0  # standard errors to either side
 _MOST_STRATA = 50  # more take long, and their average is normal anyway
+_LARGEST = 2**31  # units the law can count; in a larger universe it looks the same
 _MOST_SUMS = 200_000  # told apart; the eye sees some hundred
 _FEW_PEOPLE = 60  # with fewer from a finite universe, many different answers take long
 _FEWEST_STEPS = 64  # over the range of the answers, however many people there are
@@ -108,7 +109,7 @@ def _simple_curve(data: StudyData, figure: Figure) -> FanCurve | None:
     responses, estimate = figure.numbers, figure.estimate
     base, coarse = len(responses), _coarse(responses)
     finite = data.built.design.population_size is not None and not data.plan.replacement
-    size = max(base, round(estimate.weighted_base)) if finite else None
+    size = max(base, min(round(estimate.weighted_base), _LARGEST)) if finite else None
     slow = size is not None and base < _FEW_PEOPLE and coarse is not responses
     universe = plug_in_universe(coarse if slow else responses, size)
     sums = max(_MOST_SUMS, _FEWEST_STEPS * base)
@@ -139,7 +140,7 @@ def _stratified_law(data: StudyData, figure: Figure) -> SamplingDistribution | N
     stratum = design.stages.stratum
     sizes = np.rint(np.bincount(stratum, weights=design.weights)).astype(int)
     answered = np.bincount(stratum[figure.base], minlength=strata)
-    if (answered == 0).any() or (answered > sizes).any():
+    if (answered == 0).any() or (answered > sizes).any() or sizes.sum() > _LARGEST:
         return None
     numbers = _coarse(figure.numbers)
     parts = [numbers[stratum[figure.base] == h] for h in range(strata)]

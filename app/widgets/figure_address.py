@@ -67,8 +67,12 @@ def from_address(data: StudyData) -> FigureRequest | None:
 def mended_words(request: FigureRequest) -> str:
     """Return one sentence on what the address names that is not there; "" where all is."""
     named = {name: address.read(name) for name in ("q", "s", "a", "g", "level", "method")}
-    codes = _list_of(named["a"]) if named["a"].startswith("[") else (named["a"],)
-    is_answered = not request.answers or bool(codes) and set(codes) <= set(request.answers)
+    listed = set(_list_of(named["a"]))
+    is_answered = (
+        not request.answers
+        or named["a"] in request.answers
+        or (bool(listed) and listed <= set(request.answers))
+    )
     there = {
         "q": request.question,
         "s": request.statistic.value,

@@ -147,8 +147,8 @@ def test_the_figure(screens):
     screens.open("figure")
     pages.choose(screens.page, "address_q", f"{CHOICE} · {CHOICE}")
     screens.page.wait_for_selector(".st-key-fan .main-svg")
-    for part in ("How this number came about", "Numbers as a table", "Method"):
-        pages.open_expander(screens.page, part)
+    parts = ("How this number came about", "Numbers as a table", "Method")
+    pages.open_expander(screens.page, *parts)
     check(screens, CHOICE, UNIT, *LABELS)
     pages.keep(screens.page)
     pages.click(screens.page, "Copy the sentence")

@@ -31,8 +31,7 @@ def visited(server, browser):
 
     def visit(path: str, *parts: str) -> None:
         pages.go(page, f"{server.address}{path}")
-        for part in parts:
-            pages.open_expander(page, part)
+        pages.open_expander(page, *parts)
         faults.extend(f"{path}: {fault}" for fault in pages.policy_faults(page))
 
     visit("/")

@@ -331,6 +331,18 @@ def test_everybody_answered_has_no_sampling_error(store):
     assert window.problems == []
 
 
+@pytest.mark.parametrize("plan", [CHANCE, SEPARATE])
+@pytest.mark.parametrize("statistic", ["average", "share", "total", "median"])
+def test_the_largest_universe_that_can_be_typed(store, plan, statistic):
+    most = 10**10
+    strata = tuple(replace(s, population_size=most) for s in plan.strata)
+    study = orchard(store, replace(plan, universe_size=None if strata else most, strata=strata))
+    question = "Q3" if statistic == "total" else "Q1"
+    window = Window("figure", study=study, q=question, s=statistic)
+    assert 'data-figure="value"' in window.html
+    assert window.problems == []
+
+
 def test_separate_draws(store):
     study = orchard(store, SEPARATE)
     window = Window("figure", study=study, q="Q1", s="average")

@@ -203,11 +203,12 @@ def typed(page: Page, key: str) -> str:
     return page.locator(f".st-key-{key} input, .st-key-{key} textarea").first.input_value()
 
 
-def open_expander(page: Page, name: str) -> None:
-    """Open a part that is folded away; it may be open already."""
-    part = page.locator("details").filter(has=page.locator("summary", has_text=name)).first
-    if part.get_attribute("open") is None:
-        part.locator("summary").click()
+def open_expander(page: Page, *names: str) -> None:
+    """Open parts that are folded away; they may be open already."""
+    for name in names:
+        part = page.locator("details").filter(has=page.locator("summary", has_text=name)).first
+        if part.get_attribute("open") is None:
+            part.locator("summary").click()
     idle(page)
 
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from playwright.sync_api import Page
 
-from tests.support.browser_pages import idle, open_expander, plain, table_rows, text_of
+from tests.support.browser_pages import open_expander, plain, table_rows, text_of
 
 _RAILS = """() => [...document.querySelectorAll('[class*=st-key-rail_row_]')].map(row => ({
   label: row.querySelector('button').textContent,
@@ -50,9 +50,7 @@ def read_figure(page: Page) -> FigureScreen:
     """Open what is folded away on the Figure screen and read all of it."""
     page.wait_for_selector("[data-figure=value]")
     page.wait_for_selector(".st-key-fan .main-svg")
-    for part in ("How this number came about", "Numbers as a table", "Method"):
-        open_expander(page, part)
-    idle(page)
+    open_expander(page, "How this number came about", "Numbers as a table", "Method")
     rows = table_rows(page, "The same numbers as a table")
     steps = table_rows(page, "From the file to the interval")
     rails = page.evaluate(_RAILS)

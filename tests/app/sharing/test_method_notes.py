@@ -52,7 +52,8 @@ def test_every_method_has_every_item(method):
 def test_the_sample_study():
     data = garden_data()
     spend = FigureRequest("Q5", Statistic.MEDIAN, confidence=0.9)
-    items = note(data, FigureRequest("Q1", Statistic.AVERAGE), spend)
+    brands = FigureRequest("Q7", Statistic.SHARE, ("Q7_1",))
+    items = note(data, FigureRequest("Q1", Statistic.AVERAGE), brands, spend)
     assert items["Whom the figures speak for"] == (
         f"All independent garden centres in the four regions: 1,184{NB}garden centres (as of "
         "1 January 2026; source: register of the garden trade association)."
@@ -63,9 +64,11 @@ def test_the_sample_study():
     )
     assert items["Who answered"].startswith("395 of 1,184 garden centres answered. Don\u2019t know")
     assert items["Who answered"].endswith("like those with the same \u201cRegion\u201d who did.")
-    assert items["Weights"].startswith("Each answer counts for as many garden centres as its")
+    assert items["Weights"] == (
+        "Each answer stands for its part of all garden centres with the same \u201cRegion\u201d."
+    )
     assert items["How sure"].startswith(
-        f"Intervals at the 90{NB}% and 95{NB}% level, by Student\u2019s t and Woodruff. "
+        f"Intervals at the 90{NB}% and 95{NB}% level, by Student\u2019s t, Wilson and Woodruff. "
     )
     assert "at least 30 answers" in items["What is held back"]
 
