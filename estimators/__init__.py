@@ -5,11 +5,13 @@ Arrays in, frozen results out. Every method is named after its published source 
 
 from __future__ import annotations
 
+from estimators.cell_sums import CellSums, cells_of
 from estimators.detectable_difference import detectable_difference
 from estimators.differences import difference, difference_of
 from estimators.errors import InputError
 from estimators.interval_coverage import mean_coverage, proportion_coverage, simulation_error
 from estimators.mean_intervals import mean_interval
+from estimators.mean_tables import MeanTable, tabulate_means
 from estimators.means_and_totals import mean, ratio, total
 from estimators.p_value_adjustment import adjust_p_values
 from estimators.proportion_intervals import proportion_interval
@@ -22,6 +24,7 @@ from estimators.sampling_distributions import (
     mean_distribution,
     total_distribution,
 )
+from estimators.share_tables import ShareTable, share_table, tabulate
 from estimators.skewed_mean_intervals import (
     bootstrap_t_interval,
     sample_skewness,
@@ -40,15 +43,19 @@ METHODS_VERSION = 1
 __all__ = [
     "METHODS_VERSION",
     "Caution",
+    "CellSums",
     "Difference",
     "Estimate",
     "InputError",
     "Interval",
+    "MeanTable",
     "SampleDesign",
     "SamplingDistribution",
+    "ShareTable",
     "Universe",
     "adjust_p_values",
     "bootstrap_t_interval",
+    "cells_of",
     "detectable_difference",
     "difference",
     "difference_of",
@@ -63,12 +70,15 @@ __all__ = [
     "quantile",
     "ratio",
     "sample_skewness",
+    "share_table",
     "simulation_error",
     "skewed_mean_interval",
     "skewness_caution",
     "stratified_mean",
     "stratified_mean_distribution",
     "stratified_total_distribution",
+    "tabulate",
+    "tabulate_means",
     "total",
     "total_distribution",
 ]

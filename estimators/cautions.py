@@ -38,9 +38,9 @@ NO_VARIATION = Caution(
     "everybody was asked, some error remains.",
 )
 NO_VARIATION_ON_ONE_SIDE = Caution(
-    "no_variation",
-    "On one side of this difference all answers are the same, so they cannot show how far it may "
-    "be off; as not everybody was asked, some error remains.",
+    "no_variation_on_one_side",
+    "On at least one side of this difference all answers are the same, so they cannot show how "
+    "far it may be off; as not everybody was asked, some error remains.",
 )
 SECOND_STAGE_NOT_MEASURED = Caution(
     "second_stage_not_measured",

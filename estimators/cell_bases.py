@@ -45,12 +45,12 @@ class CellCounts:
     @property
     def sampled(self) -> Bools:
         """(H, G) strata with answers in the group that were not drawn completely."""
-        return (self.members > 0) & (self.fractions < _ALL)
+        return np.asarray((self.members > 0) & (self.fractions < _ALL))
 
     @property
     def is_census(self) -> Bools:
         """(G,) whether nothing is left to chance."""
-        return ~self.sampled.any(axis=0)
+        return np.asarray(~self.sampled.any(axis=0))
 
     @property
     def degrees_of_freedom(self) -> Floats:
@@ -121,7 +121,7 @@ class CellBases:
     @property
     def follow_response(self) -> Bools:
         """(G,) whether the draw of the answers can be told from the draw of the rows."""
-        return (self.rows < self.rows_asked) & self.buckets.groups_weigh_alike
+        return np.asarray((self.rows < self.rows_asked) & self.buckets.groups_weigh_alike)
 
     @property
     def part_asked(self) -> Floats:
@@ -130,7 +130,7 @@ class CellBases:
         if not answered_base(design, None, None).universe_is_known:
             return np.zeros_like(rows)
         if design.is_simple and design.stages.is_corrected:
-            return self.counts.fractions[0]
+            return np.asarray(self.counts.fractions[0], dtype=float)
         sized = self.size > 0
         return np.where(sized, np.minimum(rows / np.where(sized, self.size, 1.0), 1.0), 0.0)
 
@@ -244,7 +244,7 @@ def _ratio(
     buckets: Buckets, rows: tuple[Floats, Floats], weights: tuple[Floats, Floats]
 ) -> tuple[Floats, Floats]:
     """(B, G) weight asked over weight that answered, and (G,) what keeps the sum of weights."""
-    missing = (rows[0] > rows[1]).any(axis=0)
+    missing = np.asarray((rows[0] > rows[1]).any(axis=0))
     if not missing.any():
         return np.ones_like(rows[0]), np.ones(len(missing))
     asked, heard = (buckets.response.sums(x) for x in (weights if buckets.weights_given else rows))
@@ -267,4 +267,4 @@ def _equal(buckets: Buckets, ratio: Floats, answered: Floats, extremes: Floats |
     most = np.where(some, high * ratio, -np.inf).max(axis=0)
     known = np.isfinite(least) & np.isfinite(most)
     apart = np.where(known, most, 0.0) - np.where(known, least, 0.0)
-    return known & (apart <= _SAME * np.where(known, least, 0.0))
+    return np.asarray(known & (apart <= _SAME * np.where(known, least, 0.0)))

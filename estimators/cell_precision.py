@@ -50,20 +50,20 @@ def precision_of_cells(variance: Floats, spread: Floats, base: CellBases) -> Cel
     usual = ~noise & ~census
     left, unseen = 1 - base.correction[:, None], 1 - base.part_asked[:, None]
     divisor = np.where(usual, (rows - 1) * variance, 1.0)
-    measured = np.where(usual, spread * rows / divisor, np.inf)
+    measured = np.where(usual, spread, 1.0) * rows / divisor
     exact = usual & (left > 0) & (np.abs(measured * left / rows - 1) < _EXACT)
     positive = np.where(left > 0, left, 1.0)
     measured = np.where(exact, rows / positive, measured)
     effect = base.stand_in_effect[:, None]
     stand_in = np.where(left > 0, rows / (effect * positive), np.inf)
-    equivalent = np.where(flat, stand_in, measured)
+    equivalent = np.where(census, np.inf, np.where(flat, stand_in, measured))
     effective = _effective(equivalent, unseen, rows, flat)
     return CellPrecision(equivalent, np.where(census, rows, effective), flat)
 
 
-def standard_errors(variance: Floats, degrees_of_freedom: Floats) -> Floats:
-    """(G, A) square roots; NaN where there is nothing to go by."""
-    unknown = (degrees_of_freedom[:, None] <= 0) & ~(variance > 0)
+def standard_errors(variance: Floats, degrees_of_freedom: Floats, flat: Bools) -> Floats:
+    """(G, A) square roots; NaN where nothing varies and nothing was drawn independently."""
+    unknown = (degrees_of_freedom[:, None] <= 0) & (flat | ~(variance > 0))
     return np.where(unknown, np.nan, np.sqrt(np.maximum(variance, 0.0)))
 
 

@@ -83,7 +83,11 @@ def shares_of_cells(
     step = max(1, _MANY // (sums.shape[1] * sums.shape[3]))
     parts = [
         _of_groups(
-            sums[:, :, here], None if extremes is None else extremes[:, :, here], whole, buckets, design
+            sums[:, :, here],
+            None if extremes is None else extremes[:, :, here],
+            whole,
+            buckets,
+            design,
         )
         for here in (slice(k, k + step) for k in range(0, sums.shape[2], step))
     ]
@@ -117,13 +121,15 @@ def _of_groups(
 
     def wide(numbers: Floats) -> Floats:
         """One number for each group, or NaN where nobody answered, for every answer."""
-        return np.where(some, numbers if numbers.ndim == 2 else numbers[:, None], np.nan) + 0 * share
+        return (
+            np.where(some, numbers if numbers.ndim == 2 else numbers[:, None], np.nan) + 0 * share
+        )
 
     return CellShares(
         base=np.where(some, base.rows[:, None], 0.0) + 0 * share,
         asked=base.rows_asked[:, None] + 0 * share,
         share=wide(share),
-        standard_error=wide(standard_errors(variance, df)),
+        standard_error=wide(standard_errors(variance, df, precision.no_variation)),
         degrees_of_freedom=wide(df),
         effective_base=wide(precision.effective_base),
         equivalent_base=wide(np.where(precision.no_variation, np.nan, precision.equivalent_base)),
@@ -137,10 +143,11 @@ def _of_groups(
 def _shares(sums: Floats, base: CellBases) -> Floats:
     """(G, A) weighted share of every answer."""
     rows, size = np.maximum(base.rows, 1)[:, None], base.size[:, None]
-    counted = sums[0].sum(axis=0) / rows
+    counted: Floats = sums[0].sum(axis=0) / rows
     weights = sums[1] if base.buckets.vary else base.buckets.weights[:, None, None] * sums[0]
     weighted = (base.ratio[:, :, None] * weights).sum(axis=0) / np.where(size > 0, size, 1.0)
-    return np.where(base.equal_weights[:, None], counted, np.minimum(weighted, 1.0))
+    shares: Floats = np.where(base.equal_weights[:, None], counted, np.minimum(weighted, 1.0))
+    return shares
 
 
 def _moments(sums: Floats, left: Floats | None, share: Floats, base: CellBases) -> Moments:

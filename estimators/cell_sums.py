@@ -169,7 +169,7 @@ def _base(where: Bools | None, design: SampleDesign, rows: slice) -> Bools | Non
 
 
 def _counted(part: _Part) -> dict[Pair, Floats]:
-    """Sums of every pair of a question and a grouping."""
+    """Count every pair of a question and a grouping."""
     buckets, rows = len(part.buckets.rows), len(part.weights)
     largest = buckets * (SLOTS + max(groups for _, groups in part.groupings.values()))
     bundles = list(_bundles({name: size + 1 for name, (_, size) in part.answers.items()}, largest))
@@ -281,7 +281,7 @@ def _joined(spans: tuple[tuple[int, int], ...]) -> tuple[tuple[int, int], ...]:
 
 
 def question_cells(cells: CellSums, question: str) -> tuple[Floats, Floats | None]:
-    """Sums of one question side by side: everyone, then every group of every grouping.
+    """Return the sums of one question side by side: everyone, then every group of every grouping.
 
     Returns
     -------

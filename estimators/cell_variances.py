@@ -14,6 +14,7 @@ Särndal, C.-E., Swensson, B., Wretman, J. (1992). Model Assisted Survey Samplin
 from __future__ import annotations
 
 from dataclasses import dataclass, fields
+from typing import Any
 
 import numpy as np
 
@@ -56,8 +57,8 @@ class Moments:
 
     def of(self, groups: Codes) -> Moments:
         """Return the moments of some of the groups."""
-        parts = {field.name: getattr(self, field.name) for field in fields(self)}
-        return Moments(**{n: v if isinstance(v, float) else v[:, groups] for n, v in parts.items()})
+        parts: list[Any] = [getattr(self, field.name) for field in fields(self)]
+        return Moments(*(part if isinstance(part, float) else part[:, groups] for part in parts))
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -242,9 +243,7 @@ def _had_all_answered(
 ) -> _Sums:
     """Contributions of all who were asked: the answers stretched, the others at their centre."""
     spread, size = base.buckets.response.spread, _positive(base.size)[:, None]
-    stretch = spread(
-        np.sqrt(np.maximum(groups.asked - 1, 0) / np.maximum(groups.answered - 1, 1))
-    )
+    stretch = spread(np.sqrt(np.maximum(groups.asked - 1, 0) / np.maximum(groups.answered - 1, 1)))
     centres, asked = spread(groups.centres), base.asked[:, :, None]
     shift = stretch * (moments.plain_total / size / np.maximum(moments.rows, 1) - centres)
     silent = asked - moments.rows

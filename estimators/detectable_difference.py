@@ -8,7 +8,7 @@ from numbers import Real
 from scipy import optimize, special
 
 from estimators.array_checks import as_confidence
-from estimators.cautions import NO_VARIATION
+from estimators.cautions import NO_VARIATION, NO_VARIATION_ON_ONE_SIDE
 from estimators.errors import InputError
 from estimators.linearized_differences import satterthwaite
 from estimators.precision import t_quantile
@@ -105,7 +105,8 @@ def _side(figure: Estimate | float, name: str) -> tuple[float, float]:
 
 def _standard_error(figure: Estimate) -> float:
     """Return the standard error, or what the interval of a share that does not vary is worth."""
-    if NO_VARIATION.code not in [note.code for note in figure.cautions]:
+    still = {NO_VARIATION.code, NO_VARIATION_ON_ONE_SIDE.code}
+    if still.isdisjoint(note.code for note in figure.cautions):
         return figure.standard_error
     if figure.degrees_of_freedom <= 0 or not figure.half_width > 0:
         return math.nan

@@ -7,17 +7,22 @@ from dataclasses import replace
 
 import numpy as np
 from numpy.typing import ArrayLike
-from scipy import special
 
 from estimators import cautions as caution
 from estimators.array_checks import Bools, as_confidence, as_mask, numbers_of_base
+from estimators.difference_results import (
+    difference_with_t,
+    merged,
+    no_difference,
+    of_one_side,
+)
 from estimators.errors import InputError
 from estimators.linearized_differences import Side, satterthwaite, side_of, variance_of_difference
 from estimators.linearized_values import AnsweredBase, answered_base
-from estimators.precision import precision_of_mean, t_interval
+from estimators.precision import precision_of_mean
 from estimators.proportion_intervals import METHOD_NAMES
 from estimators.proportions import proportion
-from estimators.results import Caution, Difference, Estimate, Interval
+from estimators.results import Difference, Estimate
 from estimators.sample_designs import SampleDesign
 from estimators.share_differences import difference_of_shares
 
@@ -93,7 +98,7 @@ def difference(
     ]
     if min(base.rows for base in bases[:2]) == 0:
         nobody = (*design.cautions, caution.NOBODY_IN_BASE)
-        return _no_figure((bases[2].rows, bases[2].size), level, nobody)
+        return no_difference((bases[2].rows, bases[2].size), level, nobody)
     sides = side_of(numbers[0], bases[0]), side_of(numbers[1], bases[1])
     if first is second and bases[0] is bases[1]:
         return _with_itself(sides[0], level)
@@ -138,14 +143,14 @@ def difference_of(
     level = as_confidence(confidence)
     _check_figures(first, second, correlation)
     counts = first.base + second.base, first.weighted_base + second.weighted_base
-    notes = _merged(first.cautions, second.cautions)
+    notes = merged(of_one_side(first.cautions), of_one_side(second.cautions))
     if math.isnan(first.value) or math.isnan(second.value):
-        return _no_figure(counts, level, notes)
+        return no_difference(counts, level, notes)
     shared = first.standard_error * second.standard_error * correlation
     variances = first.standard_error**2, second.standard_error**2
     variance = max(sum(variances) - 2 * shared, 0.0) if correlation else sum(variances)
     degrees = first.degrees_of_freedom, second.degrees_of_freedom
-    found = _with_t(
+    found = difference_with_t(
         value=_snapped(first.value - second.value, first.value, second.value),
         variance=variance,
         degrees_of_freedom=satterthwaite(variances, degrees),
@@ -179,7 +184,7 @@ def _paired(first: Side, second: Side, confidence: float) -> Difference:
     column = side_of(first.values - second.values, first.base)
     precision = precision_of_mean(column.variance, column.spread, column.base)
     notes = [caution.NO_VARIATION] if precision.no_variation else []
-    return _with_t(
+    return difference_with_t(
         value=_snapped(column.mean, first.mean, second.mean),
         variance=column.variance,
         degrees_of_freedom=column.base.counts.degrees_of_freedom,
@@ -193,15 +198,15 @@ def _paired(first: Side, second: Side, confidence: float) -> Difference:
 def _of_groups(first: Side, second: Side, both: AnsweredBase, confidence: float) -> Difference:
     """Two groups, apart or overlapping."""
     variance, df, effect = variance_of_difference(first, second, both)
-    still = first.does_not_vary or second.does_not_vary
-    return _with_t(
+    still = df > 0 and (first.does_not_vary or second.does_not_vary)
+    return difference_with_t(
         value=_snapped(first.mean - second.mean, first.mean, second.mean),
         variance=variance,
         degrees_of_freedom=df,
         confidence=confidence,
         counts=(both.rows, both.size),
         design_effect=effect,
-        cautions=_merged(
+        cautions=merged(
             both.cautions,
             first.base.cautions,
             second.base.cautions,
@@ -212,7 +217,7 @@ def _of_groups(first: Side, second: Side, both: AnsweredBase, confidence: float)
 
 def _with_itself(side: Side, confidence: float) -> Difference:
     """Take a figure from itself: zero, whatever the sample."""
-    found = _with_t(
+    found = difference_with_t(
         value=0.0,
         variance=0.0,
         degrees_of_freedom=math.inf,
@@ -243,69 +248,7 @@ def _from_intervals(
         found,
         interval=interval,
         p_value=p_value,
-        cautions=_merged(found.cautions, (caution.NO_VARIATION_ON_ONE_SIDE,)),
-    )
-
-
-def _with_t(
-    value: float,
-    variance: float,
-    degrees_of_freedom: float,
-    confidence: float,
-    counts: tuple[int, float],
-    design_effect: float,
-    cautions: tuple[Caution, ...],
-) -> Difference:
-    """Put together a difference with a t interval and a t test."""
-    if degrees_of_freedom <= 0 and not variance > 0:
-        variance = math.nan
-    error = math.sqrt(variance) if variance >= 0 else math.nan
-    none = (caution.NO_DEGREES_OF_FREEDOM,) if degrees_of_freedom <= 0 else ()
-    return Difference(
-        value=value,
-        standard_error=error,
-        interval=t_interval(value, error, degrees_of_freedom, confidence),
-        degrees_of_freedom=degrees_of_freedom,
-        base=counts[0],
-        weighted_base=counts[1],
-        design_effect=design_effect,
-        effective_base=math.nan,
-        equivalent_base=math.nan,
-        cautions=_merged(cautions, none),
-        p_value=_p_value(value, error, degrees_of_freedom),
-    )
-
-
-def _p_value(value: float, error: float, degrees_of_freedom: float) -> float:
-    """Two-sided p-value of the t test."""
-    if degrees_of_freedom <= 0 or math.isnan(error):
-        return math.nan
-    if error == 0:
-        return 1.0 if value == 0 else 0.0
-    t = -abs(value) / error
-    below = (
-        special.ndtr(t) if math.isinf(degrees_of_freedom) else special.stdtr(degrees_of_freedom, t)
-    )
-    return float(2 * below)
-
-
-def _no_figure(
-    counts: tuple[int, float], confidence: float, cautions: tuple[Caution, ...]
-) -> Difference:
-    """Not a number: one side has no figure."""
-    nan = math.nan
-    return Difference(
-        value=nan,
-        standard_error=nan,
-        interval=Interval(nan, nan, confidence, "t"),
-        degrees_of_freedom=nan,
-        base=counts[0],
-        weighted_base=counts[1],
-        design_effect=nan,
-        effective_base=nan,
-        equivalent_base=nan,
-        cautions=cautions,
-        p_value=nan,
+        cautions=merged(of_one_side(found.cautions), (caution.NO_VARIATION_ON_ONE_SIDE,)),
     )
 
 
@@ -315,16 +258,8 @@ def _joint_effect(first: Estimate, second: Estimate) -> float:
     simple = sum(variance / effect for variance, effect in parts if effect > 0)
     if simple > 0 and all(effect > 0 for _, effect in parts):
         return sum(variance for variance, _ in parts) / simple
-    return 1.0 if all(effect == 1 for _, effect in parts) else math.nan
-
-
-def _merged(*groups: tuple[Caution, ...]) -> tuple[Caution, ...]:
-    """Cautions of both sides, each kind once; what one side lacks is said of one side."""
-    kinds: dict[str, Caution] = {}
-    for note in (note for group in groups for note in group):
-        one_sided = note is caution.NO_VARIATION
-        kinds.setdefault(note.code, caution.NO_VARIATION_ON_ONE_SIDE if one_sided else note)
-    return tuple(kinds.values())
+    census = math.isinf(first.degrees_of_freedom) and math.isinf(second.degrees_of_freedom)
+    return 1.0 if census and simple == 0 else math.nan
 
 
 def _snapped(value: float, first: float, second: float) -> float:

@@ -46,7 +46,7 @@ class RepeatedSamples:
 def repeat_samples(
     universe: Universe, n: int, *, replacement: bool, repetitions: int, seed: int
 ) -> RepeatedSamples:
-    """Draw simple random samples again and again; about 50 MB of memory, however many.
+    """Draw simple random samples again and again, in less than 100 MB however many.
 
     Parameters
     ----------

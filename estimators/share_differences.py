@@ -8,7 +8,7 @@ from estimators.proportion_intervals import share_interval
 from estimators.results import Estimate, Interval
 from estimators.share_evidence import ShareEvidence
 
-_HALVINGS = 60
+_HALVINGS = 45  # to 1e-12 of the p-value
 _SMALLEST = 1e-15  # p-values below cannot be told apart: 1 - p is all that a level can hold
 _ROUNDING = 1e-12  # a bound this close to 0 holds 0
 

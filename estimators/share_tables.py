@@ -1,4 +1,4 @@
-"""Tables of shares: every answer of every question in every group, in a few passes over the rows."""
+"""Tables of shares: every answer of every question in every group, from a few passes over rows."""
 
 from __future__ import annotations
 
@@ -21,7 +21,6 @@ from estimators.sample_designs import SampleDesign
 
 Block = dict[str, NDArray[Any]]
 
-_NOBODY = CellShares(*[np.zeros(0)] * 10, np.zeros(0, np.bool_))
 _MANY_UNITS = 1000  # drawn units above which questions are counted one after the other
 
 
@@ -149,7 +148,9 @@ def tabulate(
     buckets = len(design.stages.rows_drawn if design.stages.unit is not None else ())
     portions = [answers] if buckets <= _MANY_UNITS else [{q: answers[q]} for q in answers]
     counted = (
-        cells_of(portion, groupings, design, where=where, codes=_codes_of(codes, portion, groupings))
+        cells_of(
+            portion, groupings, design, where=where, codes=_codes_of(codes, portion, groupings)
+        )
         for portion in portions
     )
     blocks = [_blocks_of(cells, design, level, method) for cells in counted]
@@ -200,7 +201,9 @@ def share_table(
 
 def _codes_of(codes: Mapping[str, int] | None, *given: Mapping[str, Any]) -> dict[str, int] | None:
     """Return the numbers of codes of what is counted together."""
-    return codes and {k: v for k, v in codes.items() if any(k in names for names in given)}
+    if codes is None:
+        return None
+    return {name: size for name, size in codes.items() if any(name in names for names in given)}
 
 
 def _blocks_of(
@@ -254,11 +257,10 @@ def _table(
     blocks: Sequence[Block], design: SampleDesign, confidence: float, method: str
 ) -> ShareTable:
     """One table of the blocks of all questions."""
-    empty = _labels("", 0, []) | _numbers(_NOBODY, np.zeros(0), np.zeros(0))
+    empty = _labels("", 0, []) | dict.fromkeys(COLUMNS[5:], np.zeros(0))
+    empty |= {"base": np.zeros(0, np.int64), "no_variation": np.zeros(0, np.bool_)}
     columns = {
         name: frozen(np.concatenate([block[name] for block in blocks] or [empty[name]]))
         for name in (*COLUMNS, "no_variation")
     }
-    return ShareTable(
-        **columns, confidence=confidence, method=method, cautions=design.cautions
-    )
+    return ShareTable(**columns, confidence=confidence, method=method, cautions=design.cautions)

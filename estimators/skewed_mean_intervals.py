@@ -121,9 +121,10 @@ def bootstrap_t_interval(
     """Give the bootstrap-t interval of the mean of a simple random sample.
 
     The survey is repeated in the universe that looks like the sample
-    (:func:`estimators.universes.plug_in_universe`); what (mean - truth) / standard error does
+    (:func:`estimators.universes.plug_in_universe`); what (mean - truth) / standard deviation does
     there takes the place of the t distribution. With a known universe the repeats are drawn
-    without replacement from N units and both standard errors carry sqrt(1 - n/N).
+    without replacement from N units, and that is the whole finite correction: the factor
+    sqrt((1 - n/N) / n) of a standard error is the same in repeats and sample and cancels.
 
     Parameters
     ----------
@@ -143,7 +144,8 @@ def bootstrap_t_interval(
     Returns
     -------
     Interval
-        A side without bound where too many repeats would see no variation; both where n is 1.
+        A side without bound where too many repeats would see no variation, both where n is 1; of
+        zero width where the answers do not differ.
 
     Raises
     ------
@@ -164,8 +166,8 @@ def bootstrap_t_interval(
     fraction = sampling_fraction(n, population_size, replacement=replacement)
     rank = _rank(as_count(repetitions, "repetitions"), level)
     centre = float(answers.mean())
-    if n == 1 or fraction == 1:
-        half = 0.0 if fraction == 1 else math.inf
+    if n == 1 or fraction == 1 or np.ptp(answers) == 0:
+        half = math.inf if n == 1 and fraction < 1 else 0.0
         return Interval(centre - half, centre + half, level, "bootstrap_t")
     units = None if replacement else population_size
     samples = repeat_samples(
@@ -175,12 +177,9 @@ def bootstrap_t_interval(
         repetitions=repetitions,
         seed=seed,
     )
-    error = math.sqrt((1 - fraction) / n)
-    ratios = np.sort(_studentised(samples.deviations, samples.standard_deviations * error))
-    error *= float(answers.std(ddof=1))
-    if error == 0:
-        return Interval(centre, centre, level, "bootstrap_t")
-    low, high = centre - ratios[-rank] * error, centre - ratios[rank - 1] * error
+    ratios = np.sort(_studentised(samples.deviations, samples.standard_deviations))
+    deviation = float(answers.std(ddof=1))
+    low, high = centre - ratios[-rank] * deviation, centre - ratios[rank - 1] * deviation
     return Interval(float(low), float(high), level, "bootstrap_t")
 
 
@@ -237,7 +236,7 @@ def skewness_caution(values: ArrayLike) -> Caution | None:
 
     References
     ----------
-    Cochran, W. G. (1977). Sampling Techniques, 3rd ed., equation 2.35 and section 2.15.
+    Cochran, W. G. (1977). Sampling Techniques, 3rd ed., section 2.15.
     """
     skewness = sample_skewness(values)
     return SKEWED_ANSWERS if np.size(values) < _COCHRAN * skewness**2 else None
@@ -294,11 +293,11 @@ def _untransformed(wanted: Floats, curve: Floats) -> Floats:
     return np.where(bent == curve, (np.cbrt(1 + 3 * bent * wanted) - 1) / bent, wanted)
 
 
-def _studentised(deviations: Floats, errors: Floats) -> NDArray[np.float64]:
-    """Deviations in standard errors; endless where a sample shows no variation but is off."""
-    varies = errors > 0
+def _studentised(deviations: Floats, spreads: Floats) -> NDArray[np.float64]:
+    """Deviations over standard deviations; endless where a sample does not vary but is off."""
+    varies = spreads > 0
     ratios = np.where(np.abs(deviations) > _FLAT, np.copysign(np.inf, deviations), 0.0)
-    ratios[varies] = deviations[varies] / errors[varies]
+    ratios[varies] = deviations[varies] / spreads[varies]
     return ratios
 
 

@@ -53,7 +53,7 @@ def stratified_mean(
 
     References
     ----------
-    Cochran, W. G. (1977). Sampling Techniques, 3rd ed., equations 5.1 and 5.7.
+    Cochran, W. G. (1977). Sampling Techniques, 3rd ed., equation 5.1 and section 5.4 (variance).
 
     Examples
     --------
@@ -69,7 +69,7 @@ def stratified_mean(
     base = _base(units, drawn)
     value = float(averages[0]) + math.fsum(units * (averages - averages[0])) / math.fsum(units)
     apart = averages - value
-    variance = _variance(units, drawn, apart, deviations) * base.counts.subgroup_factor
+    variance = _variance(units, drawn, apart, deviations)
     spread = _spread(units, drawn, apart, deviations)
     precision = precision_of_mean(variance, spread, base)
     df = base.counts.degrees_of_freedom
@@ -77,7 +77,7 @@ def stratified_mean(
 
 
 def _variance(units: Floats, drawn: Floats, apart: Floats, deviations: Floats) -> float:
-    """Variance of the mean (5.7); a single answer is judged by its distance from the mean."""
+    """Variance of the mean; a single answer is judged by its distance from the mean."""
     squares = np.where(drawn > 1, deviations**2, apart**2)
     parts = (units / units.sum()) ** 2 * (1 - drawn / units) * squares / drawn
     return math.fsum(parts)

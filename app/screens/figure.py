@@ -10,7 +10,7 @@ from app.widgets import figure_view, layout
 from app.widgets.cached_work import database
 from app.widgets.figure_address import from_address, mended_words
 from app.widgets.figure_pickers import show_pickers
-from app.widgets.figure_rails import show_rails
+from app.widgets.figure_rails import rows_beside, show_rails, step_among
 from app.widgets.house_limit import show_limit_form
 from app.widgets.keeping import show_keep
 
@@ -32,25 +32,28 @@ if mended := mended_words(request):
 show_pickers(data, request)
 layout.show_standing(data, request, opened)
 left, right = st.columns([8, 4], gap="large")
+question = data.question(request.question)
+rows = rows_beside(data, request, question) if question and question.usable else ()
+step = step_among(rows, request)
 figure = None
 try:
     figure = compute_figure(data, request)
-    text = describe(data, figure)
+    text = describe(data, figure, step=step)
 except FigureError as error:
     with left:
         layout.problem(str(error))
 if figure is not None:
     with left:
         figure_view.show_number(data, figure, text)
-        figure_view.show_fan(data, figure, text)
+        figure_view.show_fan(data, figure, text, step)
 with right:
     if figure is not None:
         try:
             show_keep(database(), opened.study, data, request, text)
         except StoreError as error:
             layout.store_problem(error)
-    question = data.question(request.question)
-    rows = show_rails(data, request, question) if question and question.usable else ()
+    if question and question.usable:
+        show_rails(data, request, question, rows)
 if figure is not None:
     with st.expander("How this number came about"):
         figure_view.show_steps(steps_of(data, figure, file_name=file.file_name))

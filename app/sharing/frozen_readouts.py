@@ -103,7 +103,7 @@ def headline_of(data: StudyData, item: KeptFigure) -> str:
     if item.headline.strip():
         return item.headline.strip()
     figure = compute_figure(data, item.request)
-    return describe(data, figure, step=_step_of(_rows(data, figure))).headline
+    return describe(data, figure, step=step_of(readout_rows(data, figure))).headline
 
 
 def _study_base(data: StudyData) -> str:
@@ -116,8 +116,8 @@ def _study_base(data: StudyData) -> str:
 
 def _section(data: StudyData, item: KeptFigure, figure: Figure) -> FrozenFigure:
     held = _is_kept_from_clients(figure)
-    rows = _rows(data, figure)
-    step = _step_of(rows)
+    rows = readout_rows(data, figure)
+    step = step_of(rows)
     text = describe(data, figure, step=step)
     fan = None if held else guarded_fan(fan_of(data, figure, step=step), figure.counts.answered)
     ends = _shown_axis(rows)
@@ -160,14 +160,15 @@ def _held_sentence(figure: Figure) -> str:
     return f"This figure is held back: {figure.verdict.short}."
 
 
-def _rows(data: StudyData, figure: Figure) -> tuple[FigureRow, ...]:
+def readout_rows(data: StudyData, figure: Figure) -> tuple[FigureRow, ...]:
+    """Return the rows a figure has in a readout: everyone first, then its groups."""
     split = data.question(figure.request.split_by) if figure.request.split_by else None
     if split is None or not split.usable or figure.group is not None:
         return (single_row(data, figure),)
     return figure_rows(data, group_requests(split, figure.request))
 
 
-def _step_of(rows: tuple[FigureRow, ...]) -> float | None:
+def step_of(rows: tuple[FigureRow, ...]) -> float | None:
     """Return the step of the column: headline, sentence and fan are rounded like the table."""
     return rows[0].words.step if rows[0].words is not None else None
 
@@ -293,4 +294,13 @@ def _held_back(sections: tuple[FrozenFigure, ...]) -> tuple[str, ...]:
     )
 
 
-__all__ = ["Draft", "FigureError", "freeze", "guarded_fan", "headline_of", "moment_words"]
+__all__ = [
+    "Draft",
+    "FigureError",
+    "freeze",
+    "guarded_fan",
+    "headline_of",
+    "moment_words",
+    "readout_rows",
+    "step_of",
+]

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 
 from app.study.figure_requests import FigureRequest, Statistic
 from app.study.figures import Figure, FigureError, ReadValues, compute_figure, reader
-from app.study.number_format import FigureWords, column_step, write_count
+from app.study.number_format import FigureWords, column_scale, column_step, write_count
 from app.study.pictures import Rail
 from app.study.questions import Question, QuestionKind
 from app.study.sentences import between_words, value_words, words_of
@@ -98,26 +98,22 @@ def figure_rows(
     share = bool(figures) and figures[0].scale.share
     factor = 100.0 if share else 1.0
     widths = [f.estimate.half_width * factor for f in figures]
-    step = column_step(widths, share=share, values=[f.estimate.value * factor for f in figures])
-    ends = axis_of(figures)
-    return _in_one_unit(
-        tuple(
-            _row(data, request, figure, reason, step, ends, by_answer)
-            for request, figure, reason in computed
-        )
-    )
-
-
-def _in_one_unit(rows: tuple[FigureRow, ...]) -> tuple[FigureRow, ...]:
-    """Write the unit into the cells where one head cannot speak for the whole column."""
-    if len({row.words.unit for row in rows if row.words is not None}) < 2:
-        return rows
+    values = [f.estimate.value * factor for f in figures]
+    step = column_step(widths, share=share, values=values)
+    column = _Column(step, column_scale(values, step), axis_of(figures), by_answer)
     return tuple(
-        replace(row, value=row.words.full)
-        if row.words is not None and row.value == row.words.value
-        else row
-        for row in rows
+        _row(data, request, figure, reason, column) for request, figure, reason in computed
     )
+
+
+@dataclass(frozen=True, slots=True)
+class _Column:
+    """What the rows of one table share: step, scale of the numbers, ends of the rails, labels."""
+
+    step: float
+    scale: int | None
+    ends: tuple[float, float]
+    by_answer: bool
 
 
 def _try(data: StudyData, request: FigureRequest, read: ReadValues) -> tuple[Figure | None, str]:
@@ -139,16 +135,14 @@ def _row(
     request: FigureRequest,
     figure: Figure | None,
     reason: str,
-    step: float,
-    ends: tuple[float, float],
-    by_answer: bool,
+    column: _Column,
 ) -> FigureRow:
-    label = _label(data, request, by_answer)
+    label, ends = _label(data, request, column.by_answer), column.ends
     mark = data.study.decimal_mark
     if figure is None:
         empty = Rail(*ends, math.nan, math.nan, math.nan, False, "held back", reason)
         return FigureRow(label, request, None, None, "", "", "0", empty, reason)
-    words = words_of(figure, mark, step=step)
+    words = words_of(figure, mark, step=column.step, scale=column.scale)
     value = value_words(figure, words, mark)
     return FigureRow(
         label,
@@ -189,10 +183,9 @@ def rail_of(figure: Figure, text: str, ends: tuple[float, float]) -> Rail:
 
 def single_row(data: StudyData, figure: Figure) -> FigureRow:
     """Return a figure as the one row of its table, in its own step."""
-    words = words_of(figure, data.study.decimal_mark)
-    return _row(
-        data, figure.request, figure, "", words.step, (figure.scale.low, figure.scale.high), False
-    )
+    step = words_of(figure, data.study.decimal_mark).step
+    column = _Column(step, None, (figure.scale.low, figure.scale.high), by_answer=False)
+    return _row(data, figure.request, figure, "", column)
 
 
 def has_fixed_ends(figure: Figure) -> bool:

@@ -95,6 +95,20 @@ def column_step(
     return _step_without_width(max(uneven, default=0.0), share=share)
 
 
+def column_scale(values: Iterable[float], step: float) -> int:
+    """Return what one counts of in a column of numbers: 1, a million, a billion.
+
+    Parameters
+    ----------
+    values : iterable of float
+        The numbers of the column.
+    step : float
+        Its step; the largest number as rounded decides.
+    """
+    finite = [abs(v) for v in values if math.isfinite(v)]
+    return _scale_word(_decimal(max(finite, default=0.0)), step)[0]
+
+
 def figure_words(
     value: float,
     low: float,
@@ -103,6 +117,7 @@ def figure_words(
     share: bool,
     decimal_mark: str = ".",
     step: float | None = None,
+    scale: int | None = None,
 ) -> FigureWords:
     """Write an estimate and its interval.
 
@@ -116,12 +131,19 @@ def figure_words(
         "." or ",".
     step : float, optional
         The step of the column or figure it stands beside; else its own.
+    scale : int, optional
+        What one counts of in the column it stands in, from :func:`column_scale`; else its own.
     """
     factor = Decimal(100 if share else 1)
     numbers = [_EXACT.multiply(_decimal(x), factor) for x in (value, low, high)]
     if step is None:
         step = step_for(_half_width(numbers), share=share, value=float(numbers[0]))
-    scale, unit = (1, "%") if share else _scale_word(numbers[0], step)
+    if share:
+        scale, unit = 1, "%"
+    elif scale is None:
+        scale, unit = _scale_word(numbers[0], step)
+    else:
+        unit = dict(_WORDS).get(scale, "")
     value_text, low_text, high_text = (
         _written(x, step, scale, decimal_mark, share=share) for x in numbers
     )

@@ -88,8 +88,10 @@ def describe(data: StudyData, figure: Figure, *, step: float | None = None) -> F
     )
 
 
-def words_of(figure: Figure, decimal_mark: str, *, step: float | None = None) -> FigureWords:
-    """Return value and interval of a figure as printed."""
+def words_of(
+    figure: Figure, decimal_mark: str, *, step: float | None = None, scale: int | None = None
+) -> FigureWords:
+    """Return value and interval of a figure as printed, in a column with its step and scale."""
     estimate = figure.estimate
     return figure_words(
         estimate.value,
@@ -98,6 +100,7 @@ def words_of(figure: Figure, decimal_mark: str, *, step: float | None = None) ->
         share=figure.scale.share,
         decimal_mark=decimal_mark,
         step=step,
+        scale=scale,
     )
 
 
@@ -309,14 +312,13 @@ def between_words(figure: Figure, words: FigureWords) -> str:
 
 def _headline(data: StudyData, figure: Figure, words: FigureWords) -> str:
     request, question, unit = figure.request, figure.question, data.plan.unit_many
-    place = ""
+    place, text = "", question.text.rstrip(" ?.:")
     if figure.group is not None:
         place = f" ({figure.group.label_of(request.group_answer)})"
     if request.statistic is Statistic.TOTAL and request.counts_people:
-        return f"{words.full} {unit}{place} {did_words(figure)}"
+        return f"{words.full} {unit}{place} {did_words(figure)}: {text}"
     if figure.scale.share:
-        return f"{_part_words(data, figure, words)} {unit}{place} {did_words(figure)}"
-    text = question.text.rstrip(" ?.:")
+        return f"{_part_words(data, figure, words)} {unit}{place} {did_words(figure)}: {text}"
     return f"{_NOUNS[request.statistic].capitalize()} {words.full}{place}: {text}"
 
 

@@ -24,20 +24,32 @@ from app.widgets.plain_text import as_html, as_typed, shortened
 ANSWERS = "answers"
 
 
-def show_rails(
+def rows_beside(
     data: StudyData, request: FigureRequest, question: Question
 ) -> tuple[FigureRow, ...]:
-    """Show the rows beside a figure and return them."""
-    split = _pick_rows(data, request, question)
+    """Return the rows beside a figure, as the address wants them."""
+    named, options = address.read("by"), _splits(data, request, question)
+    split = named if named in options else default_split(data, request, question)
     if split == ANSWERS:
-        rows = figure_rows(data, answer_requests(question, request), by_answer=True)
-    else:
-        grouping = data.question(split)
-        rows = figure_rows(data, group_requests(grouping, request)) if grouping else ()
+        return figure_rows(data, answer_requests(question, request), by_answer=True)
+    grouping = data.question(split)
+    return figure_rows(data, group_requests(grouping, request)) if grouping else ()
+
+
+def step_among(rows: tuple[FigureRow, ...], request: FigureRequest) -> float | None:
+    """Return the step of the rows where the figure stands among them, so that both are alike."""
+    row = next((row for row in rows if _same(row.request, request)), None)
+    return row.words.step if row is not None and row.words is not None else None
+
+
+def show_rails(
+    data: StudyData, request: FigureRequest, question: Question, rows: tuple[FigureRow, ...]
+) -> None:
+    """Show what stands beside a figure and its rows."""
+    _pick_rows(data, request, question)
     with st.container(key="rails", gap=None):
         for number, row in enumerate(rows):
             _show_row(row, number, same=_same(row.request, request))
-    return rows
 
 
 def default_split(data: StudyData, request: FigureRequest, question: Question) -> str:
@@ -50,15 +62,18 @@ def default_split(data: StudyData, request: FigureRequest, question: Question) -
     return names[0] if names else ANSWERS
 
 
-def _pick_rows(data: StudyData, request: FigureRequest, question: Question) -> str:
+def _splits(data: StudyData, request: FigureRequest, question: Question) -> list[str]:
     options = [q.key for q in groupings(data) if q.key != question.key]
     by_answer = request.statistic is Statistic.SHARE and len(question.answers) > 1
-    if by_answer:
-        options = [ANSWERS, *options]
+    return [ANSWERS, *options] if by_answer else options
+
+
+def _pick_rows(data: StudyData, request: FigureRequest, question: Question) -> None:
+    options = _splits(data, request, question)
     if not options:
-        return ""
+        return
     words = {q.key: shortened(q.text, 48) for q in groupings(data)}
-    return address.select(
+    address.select(
         "Beside it",
         "by",
         options,

@@ -43,9 +43,9 @@ def show_number(data: StudyData, figure: Figure, text: FigureText) -> None:
     )
 
 
-def show_fan(data: StudyData, figure: Figure, text: FigureText) -> None:
-    """Show the fan with the lines under it."""
-    fan = fan_of(data, figure)
+def show_fan(data: StudyData, figure: Figure, text: FigureText, step: float | None = None) -> None:
+    """Show the fan with the lines under it, rounded to the step of the rows beside it."""
+    fan = fan_of(data, figure, step=step)
     dark = st.context.theme.type == "dark"
     st.plotly_chart(
         fan_figure(fan, DARK if dark else LIGHT, show_endless=address.read("endless") == "1"),

@@ -8,9 +8,8 @@ import streamlit as st
 
 from app.charts.rail_svg import rail_html
 from app.charts.verdict_glyphs import verdict_html
-from app.sharing.frozen_readouts import headline_of
+from app.sharing.frozen_readouts import headline_of, readout_rows, step_of
 from app.store import Database, StoreError, UnknownFigureError
-from app.study.figure_rows import single_row
 from app.study.figures import FigureError, compute_figure
 from app.study.sentences import describe, value_words
 from app.study.study import KeptFigure
@@ -89,8 +88,8 @@ def _show_figure(data: StudyData, item: KeptFigure) -> None:
     except FigureError as error:
         layout.problem(str(error))
         return
-    text = describe(data, figure)
-    row = single_row(data, figure)
+    rows = readout_rows(data, figure)
+    text, row = describe(data, figure, step=step_of(rows)), rows[0]
     value = value_words(figure, text.words, data.study.decimal_mark)
     st.html(
         f'<p class="hw-tight"><b>{as_html(value)}</b> '

@@ -2,6 +2,7 @@ from __future__ import annotations
 
 import json
 import math
+from itertools import pairwise
 from pathlib import Path
 
 import numpy as np
@@ -69,7 +70,7 @@ def test_adjusted_values_rise_with_the_given_ones_and_never_fall_below_them(meth
 def test_which_method_is_stricter(p_values):
     found = {name: adjust_p_values(p_values, name) for name in ADJUSTMENTS}
     falling = ("bonferroni", "holm", "hochberg", "benjamini_hochberg")
-    for stricter, milder in zip(falling, falling[1:], strict=False):
+    for stricter, milder in pairwise(falling):
         assert (found[stricter] >= found[milder] - 1e-15).all()
     assert (found["benjamini_yekutieli"] >= found["benjamini_hochberg"]).all()
 

@@ -63,11 +63,27 @@ def test_both_ways_of_drawing_have_the_same_moments_sample_by_sample():
     assert found.skewness == pytest.approx([stats.skew(scaled, bias=False)] * 3, rel=1e-12)
 
 
+@pytest.mark.parametrize("n", [10, 60])  # drawn as units, and as counts
+@pytest.mark.parametrize("replacement", [False, True])
+def test_moments_belong_to_the_sample_that_was_drawn(n, replacement):
+    """Of zeros and ones the mean tells the whole sample; scipy.stats.skew for its skewness."""
+    found = drawn(Universe([0, 1], [80, 20]), n, replacement, repetitions=300)
+    for deviation, spread, skewness in zip(
+        found.deviations, found.standard_deviations, found.skewness, strict=True
+    ):
+        ones = round((deviation + 0.2) * n)
+        sample = np.repeat([0.0, 1.0], [n - ones, ones])
+        expected = stats.skew(sample, bias=False) if 0 < ones < n else 0.0
+        assert deviation + 0.2 == pytest.approx(ones / n, abs=1e-13)
+        assert spread == pytest.approx(sample.std(ddof=1), rel=1e-10, abs=1e-15)
+        assert skewness == pytest.approx(expected, rel=1e-9, abs=1e-9)
+
+
 def test_samples_without_variation_have_exactly_none():
     # 0.3 and 0.7 about their mean cannot be written exactly
     rare = Universe([0.3, 0.7, 1.9], [10**6, 1, 1])
-    for n in (10, 100):
-        found = drawn(rare, n, False, repetitions=500)
+    for n in (*range(3, 24), *range(90, 130)):
+        found = drawn(rare, n, False, repetitions=300)
         assert (found.standard_deviations == 0).mean() > 0.98
         assert (found.skewness[found.standard_deviations == 0] == 0).all()
 

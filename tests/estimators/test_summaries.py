@@ -8,7 +8,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from estimators import SampleDesign, mean, mean_interval
@@ -93,6 +93,7 @@ def test_rows_with_these_summaries_say_the_same(strata):
     assert_same(*summaries_and_rows(strata))
 
 
+@settings(deadline=None)
 @given(
     st.lists(
         st.tuples(

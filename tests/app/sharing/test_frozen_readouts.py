@@ -235,11 +235,11 @@ def test_in_short_says_headline_and_interval_of_the_first_three():
     readout = frozen(data, kept(YES, headline="Many say yes."), no, kept(YES, headline="Yes?"), no)
     assert readout.in_short == (
         f"Many say yes (37 to 47{NB}%).",
-        f"58{NB}% of kiosks answered \u201cNo\u201d (53 to 63{NB}%).",
+        f"58{NB}% of kiosks answered \u201cNo\u201d: Question Q4 (53 to 63{NB}%).",
         f"Yes? (37 to 47{NB}%).",
     )
     nobody = frozen(yes_no(0, 400), YES).in_short
-    assert nobody == (f"None of 400 kiosks answered \u201cYes\u201d (up to 1.0{NB}%).",)
+    assert nobody == (f"None of 400 kiosks answered \u201cYes\u201d: Question Q4 (up to 1.0{NB}%).",)
     census = frozen(yes_no(20, 22, chance(42)), kept(YES, headline="All asked")).in_short
     assert census == ("All asked.",)
 

@@ -52,7 +52,7 @@ def test_a_share_of_an_endless_universe():
     assert text.who == "all kiosks"
     assert text.base_line == "400 answered of 400 asked"
     assert text.counts_like == "counts like 400 answers from an endless universe"
-    assert text.headline == f"42{NB}% of kiosks answered \u201cYes\u201d"
+    assert text.headline == f"42{NB}% of kiosks answered \u201cYes\u201d: Question Q4"
 
 
 def test_a_known_universe_is_named():
@@ -125,7 +125,7 @@ def test_nobody_chose_it():
     assert text.sentence == (
         f"Had all kiosks answered, the share would very likely be no more than 9{NB}%."
     )
-    assert text.headline == "None of 40 kiosks answered \u201cYes\u201d"
+    assert text.headline == "None of 40 kiosks answered \u201cYes\u201d: Question Q4"
 
 
 def test_everybody_chose_it():
@@ -135,7 +135,7 @@ def test_everybody_chose_it():
     assert text.sentence == (
         f"Had all kiosks answered, the share would very likely be no less than 91{NB}%."
     )
-    assert text.headline == "All of 40 kiosks answered \u201cYes\u201d"
+    assert text.headline == "All of 40 kiosks answered \u201cYes\u201d: Question Q4"
 
 
 def test_an_end_too_small_to_print_is_left_out_of_the_sentence():
@@ -189,7 +189,7 @@ def test_a_number_the_plan_itself_fixes():
         "The number that answered \u201cLowmere\u201d is 331: the sampling plan itself fixes it, "
         "so it cannot vary."
     )
-    assert text.headline == "331 garden centres answered \u201cLowmere\u201d"
+    assert text.headline == "331 garden centres answered \u201cLowmere\u201d: Region"
 
 
 def test_too_few_to_say():
@@ -207,14 +207,17 @@ def test_totals():
     people = say(data, FigureRequest("Q7", Statistic.TOTAL, ("Q7_1",)))
     assert "the number that chose \u201cLindenroot\u201d would very likely lie" in people.sentence
     assert people.title == "in all chose \u201cLindenroot\u201d"
-    assert people.headline.endswith(" garden centres chose \u201cLindenroot\u201d")
+    assert people.headline.endswith(
+        " garden centres chose \u201cLindenroot\u201d: Which brands do you stock"
+    )
 
 
 def test_several_answers_counted_together():
     text = say(garden_data(), FigureRequest("Q7", Statistic.SHARE, ("Q7_1", "Q7_2")))
     assert text.title == "chose \u201cLindenroot\u201d or \u201cMarlow Peat\u201d"
     assert text.headline.endswith(
-        "of garden centres chose \u201cLindenroot\u201d or \u201cMarlow Peat\u201d"
+        "of garden centres chose \u201cLindenroot\u201d or \u201cMarlow Peat\u201d: "
+        "Which brands do you stock"
     )
 
 

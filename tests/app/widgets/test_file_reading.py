@@ -32,7 +32,7 @@ def test_nothing_changed_is_the_same_reading():
 @pytest.mark.parametrize("change", [{"encoding": "cp1252"}, {"delimiter": ","}])
 def test_other_cells_let_the_table_be_found_again(change):
     wanted = changed(**change)
-    found_again = {name: None for name in ("quote", "escape", "lines_above", "name_row")}
+    found_again = dict.fromkeys(("quote", "escape", "lines_above", "name_row"))
     assert wanted == replace(READ, **change, **found_again, left_out=())
 
 

@@ -41,7 +41,7 @@ def test_a_field_is_read(field, typed, stored):
 @pytest.mark.parametrize("field", list(AS_STORED)[:4])
 @pytest.mark.parametrize("typed", ["", "x", "-1", "0", "0.0", "1e3", "1 000", "101", "inf", "nan"])
 def test_a_field_that_is_no_limit_is_named(field, typed):
-    with pytest.raises(ValueError, match="no number|must be above 0") as caught:
+    with pytest.raises(ValueError, match=r"no number|must be above 0") as caught:
         edited_limit(HouseLimit(), {**AS_STORED, field: typed})
     assert str(caught.value).endswith(".")
     assert "\u00b1" in str(caught.value) or "With a note from" in str(caught.value)
@@ -49,5 +49,5 @@ def test_a_field_that_is_no_limit_is_named(field, typed):
 
 @pytest.mark.parametrize("typed", ["", "0", "1.5", "many", "-3"])
 def test_the_fewest_answers_are_a_whole_number(typed):
-    with pytest.raises(ValueError, match="^Fewest answers: "):
+    with pytest.raises(ValueError, match=r"^Fewest answers: "):
         edited_limit(HouseLimit(), {**AS_STORED, "smallest_base": typed})
