@@ -12,7 +12,6 @@ import numpy as np
 
 from estimators.array_checks import Bools, Codes, Floats
 from estimators.cell_buckets import Buckets
-from estimators.linearized_values import answered_base
 from estimators.sample_designs import SampleDesign
 
 _ALL = 1 - 1e-12  # a sampling fraction from here on is all there is
@@ -127,7 +126,7 @@ class CellBases:
     def part_asked(self) -> Floats:
         """(G,) rows over the units they speak for; 0 where the universe is unknown."""
         design, rows = self.design, self.rows
-        if not answered_base(design, None, None).universe_is_known:
+        if not self.buckets.universe_is_known:
             return np.zeros_like(rows)
         if design.is_simple and design.stages.is_corrected:
             return np.asarray(self.counts.fractions[0], dtype=float)
@@ -146,7 +145,8 @@ class CellBases:
         weighs = (self.size > 0) & ~self.equal_weights
         loss = some * self.squares / np.where(weighs, self.size, 1.0) ** 2
         per_unit = some / np.maximum(self.counts.members.sum(axis=0), 1)
-        return np.where(weighs, loss, 1.0) * (1 + (per_unit - 1) * _CLUSTER_LIKENESS)
+        alike = 1 + (per_unit - 1) * _CLUSTER_LIKENESS
+        return np.asarray(np.where(weighs, loss, 1.0) * alike)
 
     @property
     def most_units(self) -> Floats:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from estimators.array_checks import Bools, Codes, Floats
+from estimators.linearized_values import answered_base
 from estimators.sample_designs import SampleDesign
 from estimators.sampling_stages import SamplingStages
 
@@ -69,6 +70,8 @@ class Buckets:
         Whether the weights came from outside.
     groups_weigh_alike : bool
         Whether rows weigh the same wherever not answering is a matter of chance.
+    universe_is_known : bool
+        Whether it is known what part of the universe was asked.
     strata, response : Gathering
         Stratum of each bucket, and group within which not answering is a matter of chance.
     """
@@ -80,6 +83,7 @@ class Buckets:
     vary: bool
     weights_given: bool
     groups_weigh_alike: bool
+    universe_is_known: bool
     strata: Gathering
     response: Gathering
 
@@ -118,19 +122,29 @@ def buckets_of(design: SampleDesign) -> Buckets:
     home = stages.unit_stratum if units else np.arange(size)
     weights = np.zeros(size)
     weights[of_rows] = design.weights
-    apart = np.abs(design.weights - weights[of_rows])
-    alike = not units and bool((apart <= _SAME * design.weights).all())
+    vary, alike = _compared(design, weights if size == 1 else weights[of_rows])
     return Buckets(
         stages=stages,
         of_rows=of_rows,
         rows=stages.rows_drawn if units else stages.units_drawn,
         weights=weights,
-        vary=design.weights_given and bool(apart.any()),
+        vary=vary,
         weights_given=design.weights_given,
-        groups_weigh_alike=alike or not design.weights_given,
+        groups_weigh_alike=alike,
+        universe_is_known=answered_base(design, None, None).universe_is_known,
         strata=_gathering(home),
         response=_gathering(home if design.weights_given else _response(stages, of_rows, size)),
     )
+
+
+def _compared(design: SampleDesign, of_bucket: Floats) -> tuple[bool, bool]:
+    """Whether weights vary within buckets, and are alike where not answering is by chance."""
+    if not design.weights_given:
+        return False, True
+    vary = bool((design.weights != of_bucket).any())
+    if not vary or design.stages.unit is not None:
+        return vary, design.stages.unit is None
+    return True, bool((np.abs(design.weights - of_bucket) <= _SAME * design.weights).all())
 
 
 def _response(stages: SamplingStages, of_rows: Codes, size: int) -> Codes:

@@ -58,7 +58,8 @@ class Moments:
     def of(self, groups: Codes) -> Moments:
         """Return the moments of some of the groups."""
         parts: list[Any] = [getattr(self, field.name) for field in fields(self)]
-        return Moments(*(part if isinstance(part, float) else part[:, groups] for part in parts))
+        chosen: list[Any] = [p if isinstance(p, float) else p[:, groups] for p in parts]
+        return Moments(*chosen)
 
 
 @dataclass(frozen=True, slots=True, eq=False)

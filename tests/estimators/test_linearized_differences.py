@@ -141,6 +141,36 @@ def test_overlapping_groups_equal_the_plain_loops(seed, two_stages):
     assert found.standard_error**2 == pytest.approx(wanted, rel=1e-10)
 
 
+@pytest.mark.parametrize("universe", [600, 900, None])
+@pytest.mark.parametrize("second", [None, 1, 3])
+def test_missing_answers_leave_a_smaller_sample_whatever_the_overlap(universe, second, rng):
+    """Where every group answers alike: 400 answers of 600 asked are a sample of 400."""
+    rows = np.arange(600)
+    group, answered = rows % 4 == 0, rows // 4 % 3 > 0
+    other = None if second is None else (rows % 4 <= second) & (rows % 4 >= second - 2)
+    values = rng.gamma(2, 5, 600)
+    later = values + rng.normal(0, 3, 600)
+    found = difference(
+        values,
+        later,
+        SampleDesign.simple_random(600, population_size=universe),
+        first_where=group,
+        second_where=other,
+        answered=answered,
+    )
+    smaller = difference(
+        values[answered],
+        later[answered],
+        SampleDesign.simple_random(400, population_size=universe),
+        first_where=group[answered],
+        second_where=None if other is None else other[answered],
+    )
+    assert found.value == pytest.approx(smaller.value, rel=1e-12)
+    assert found.standard_error == pytest.approx(smaller.standard_error, rel=1e-12)
+    assert found.degrees_of_freedom == pytest.approx(smaller.degrees_of_freedom, rel=1e-4)
+    assert found.design_effect == 1
+
+
 def test_satterthwaite():
     """Equal variances add up their degrees of freedom; one that is zero adds nothing."""
     assert satterthwaite([2.0, 2.0], [7, 7]) == pytest.approx(14)

@@ -51,12 +51,12 @@ class Worked:
         step = 10.0 ** math.floor(math.log10(half / 2))
         return max(step, 0.1) if self.share else step
 
-    def printed(self, step: float | None = None) -> Printed:
-        """Write value and interval in one step."""
+    def printed(self, step: float | None = None, *, in_millions: bool = False) -> Printed:
+        """Write value and interval in one step, and in millions where the column is."""
         step = step or self.step()
         factor = 100 if self.share else 1
         scale, unit = 1, "%" if self.share else ""
-        if not self.share and self.value >= 1e6 and step >= 1e4:
+        if in_millions or (not self.share and self.value >= 1e6 and step >= 1e4):
             scale, unit = 10**6, "million"
         texts = [_rounded(x * factor, step, scale) for x in (self.value, self.low, self.high)]
         return Printed(*texts, unit)
@@ -215,6 +215,13 @@ def column_step(column: list[Worked]) -> float:
     """The one step of a table column: that of its median half-width."""
     half = float(np.median([worked.half_width for worked in column]))
     return Worked(0.0, -half, half, 0, 0.0, column[0].share).step()
+
+
+def column_texts(table: dict[str, Worked]) -> dict[str, Printed]:
+    """Every figure of a column in its one step and its one unit, by label."""
+    step = column_step([*table.values()])
+    millions = any(worked.printed(step).unit == "million" for worked in table.values())
+    return {k: worked.printed(step, in_millions=millions) for k, worked in table.items()}
 
 
 def count_text(number: float) -> str:
