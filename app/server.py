@@ -14,6 +14,7 @@ from starlette.responses import (
     HTMLResponse,
     JSONResponse,
     PlainTextResponse,
+    RedirectResponse,
     Response,
 )
 from starlette.routing import Route
@@ -91,6 +92,7 @@ def own_routes(find_page: FindPage, styles: Sequence[StyleSheet] = (PLAIN_STYLE,
     return [
         Route("/healthz", _healthz),
         Route("/robots.txt", _robots),
+        Route("/studies", _studies),
         *(Route(path, _icon) for path in _ICON_PATHS),
         *readout_routes(find_page, WrongTries(), styles),
     ]
@@ -154,6 +156,11 @@ def _healthz(_request: Request) -> Response:
 
 def _robots(_request: Request) -> Response:
     return PlainTextResponse("User-agent: *\nDisallow: /\n")
+
+
+def _studies(_request: Request) -> Response:
+    """Lead to the first screen, whose address is the root."""
+    return RedirectResponse("/", 307, headers={"cache-control": "no-store"})
 
 
 def _icon(_request: Request) -> Response:

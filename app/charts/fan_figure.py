@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass, field
 from html import escape
+from typing import Any
 
 import plotly.graph_objects as go
 
@@ -37,6 +39,37 @@ _TITLE_WIDTH = 27  # the bundled font is narrow
 Strokes = list[tuple[float, float]]
 
 
+@dataclass(slots=True)
+class _Sheet:
+    """Everything to draw, checked by plotly once at the end: checking piece by piece is slow."""
+
+    traces: list[dict[str, Any]] = field(default_factory=list)
+    shapes: list[dict[str, Any]] = field(default_factory=list)
+    annotations: list[dict[str, Any]] = field(default_factory=list)
+    layout: dict[str, Any] = field(default_factory=dict)
+
+    def plot(self, **trace: object) -> None:
+        """Add a trace."""
+        self.traces.append(trace)
+
+    def draw(self, **shape: object) -> None:
+        """Add a shape."""
+        self.shapes.append(shape)
+
+    def annotate(self, **annotation: object) -> None:
+        """Add a text."""
+        self.annotations.append(annotation)
+
+    def margin(self, side: str) -> int:
+        """Return the pixels left at one side."""
+        return int(self.layout["margin"][side])
+
+    def figure(self) -> go.Figure:
+        """Return the plotly figure."""
+        layout = self.layout | {"shapes": self.shapes, "annotations": self.annotations}
+        return go.Figure(data=self.traces, layout=layout)
+
+
 def fan_figure(
     fan: Fan, palette: Palette, *, height: int = 420, show_endless: bool = False
 ) -> go.Figure:
@@ -54,20 +87,20 @@ def fan_figure(
         True draws the interval from an endless universe as a dotted pair of lines.
     """
     geometry = fan_geometry(fan)
-    figure = go.Figure()
-    _lay_out(figure, fan, geometry, palette, height)
-    _draw_band(figure, geometry, palette)
+    sheet = _Sheet()
+    _lay_out(sheet, fan, geometry, palette, height)
+    _draw_band(sheet, geometry, palette)
     if fan.share:
-        _draw_column(figure, geometry, palette)
+        _draw_column(sheet, geometry, palette)
     else:
-        _draw_bars(figure, fan, geometry, palette)
-    _draw_curve(figure, fan, geometry, palette)
+        _draw_bars(sheet, fan, geometry, palette)
+    _draw_curve(sheet, fan, geometry, palette)
     if show_endless:
-        _draw_endless(figure, fan, geometry, palette)
-    _draw_estimate(figure, fan, geometry, palette)
-    _write_ends(figure, fan, geometry, palette, height)
-    _write_titles(figure, fan, geometry, palette)
-    return figure
+        _draw_endless(sheet, fan, geometry, palette)
+    _draw_estimate(sheet, fan, geometry, palette)
+    _write_ends(sheet, fan, geometry, palette, height)
+    _write_titles(sheet, fan, geometry, palette)
+    return sheet.figure()
 
 
 def fan_config() -> dict[str, object]:
@@ -75,13 +108,11 @@ def fan_config() -> dict[str, object]:
     return {"displayModeBar": False, "staticPlot": True, "responsive": True}
 
 
-def _lay_out(
-    figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette, height: int
-) -> None:
+def _lay_out(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette, height: int) -> None:
     """Two panels of fixed ranges; every trace lives on heights from 0 to 1."""
     titles = _titles(fan, geometry)
     lines = max(len(title) for title in titles)
-    figure.update_layout(
+    sheet.layout.update(
         height=height,
         margin={
             "l": _left_margin(fan),
@@ -102,7 +133,7 @@ def _lay_out(
         yaxis2={**_HIDDEN, "anchor": "x2"},
     )
     for place, text in left_texts(fan, geometry):
-        _write_left(figure, place, text, palette)
+        _write_left(sheet, place, text, palette)
 
 
 def _left_margin(fan: Fan) -> int:
@@ -113,9 +144,9 @@ def _right_margin(fan: Fan) -> int:
     return max(64, 14 + 9 * len(fan.value_text), 14 + 7 * len(fan.low_text + "\u2212"))
 
 
-def _write_left(figure: go.Figure, height: float, text: str, palette: Palette) -> None:
+def _write_left(sheet: _Sheet, height: float, text: str, palette: Palette) -> None:
     """Write a tick or a bar's label at the left of the left panel."""
-    figure.add_annotation(
+    sheet.annotate(
         xref="paper",
         yref="paper",
         x=0,
@@ -130,51 +161,49 @@ def _write_left(figure: go.Figure, height: float, text: str, palette: Palette) -
     )
 
 
-def _draw_band(figure: go.Figure, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_band(sheet: _Sheet, geometry: FanGeometry, palette: Palette) -> None:
     """Draw the band at its true thickness, opening like a fan, and enlarged."""
     low, high = geometry.left_band
     foot, top = geometry.right_band
     start, neck, mouth, end = LEFT[0], LEFT[1], RIGHT[0], RIGHT[1]
     corners = [(start, low), (neck, low), (mouth, foot), (end, foot)]
     corners += [(end, top), (mouth, top), (neck, high), (start, high)]
-    _add_path(figure, corners, closed=True, fillcolor=palette.band_on_page, line_width=0)
+    _add_path(sheet, corners, closed=True, fillcolor=palette.band_on_page, line={"width": 0})
     for edge in (corners[1:4], corners[4:7]):
-        _add_path(figure, edge, line={"color": palette.figure, "width": 0.75})
+        _add_path(sheet, edge, line={"color": palette.figure, "width": 0.75})
 
 
-def _add_path(figure: go.Figure, corners: Strokes, *, closed: bool = False, **look: object) -> None:
+def _add_path(sheet: _Sheet, corners: Strokes, *, closed: bool = False, **look: object) -> None:
     """Add a path in paper coordinates, behind everything else."""
     path = "M " + " L ".join(f"{x:.5f},{y:.5f}" for x, y in corners) + (" Z" if closed else "")
-    figure.add_shape(type="path", path=path, xref="paper", yref="paper", layer="below", **look)
+    sheet.draw(type="path", path=path, xref="paper", yref="paper", layer="below", **look)
 
 
-def _draw_column(figure: go.Figure, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_column(sheet: _Sheet, geometry: FanGeometry, palette: Palette) -> None:
     """Draw a share as one column: solid to the low end, hatch to the high end, blank above."""
     low, high = geometry.left_band
-    _add_box(figure, 0, 1, {"color": palette.hair, "width": 1}, palette.page)
+    _add_box(sheet, 0, 1, {"color": palette.hair, "width": 1}, palette.page)
     if low > 0:
-        _add_box(figure, 0, low, {"width": 0}, palette.people)
+        _add_box(sheet, 0, low, {"width": 0}, palette.people)
     if high > low:
         edge = {"color": palette.figure, "width": 1}
-        _add_area(figure, [(0, low), (1, low), (1, high), (0, high)], edge, palette, axis="")
+        _add_area(sheet, [(0, low), (1, low), (1, high), (0, high)], edge, palette, axis="")
 
 
-def _add_box(
-    figure: go.Figure, foot: float, top: float, line: dict[str, object], fill: str
-) -> None:
+def _add_box(sheet: _Sheet, foot: float, top: float, line: dict[str, object], fill: str) -> None:
     """Add a full-width rectangle to the left panel."""
     corners = [(0.0, foot), (1.0, foot), (1.0, top), (0.0, top), (0.0, foot)]
-    _add_line(figure, corners, line, axis="", fill="toself", fillcolor=fill)
+    _add_line(sheet, corners, line, axis="", fill="toself", fillcolor=fill)
 
 
 def _add_area(
-    figure: go.Figure, corners: Strokes, edge: dict[str, object], palette: Palette, *, axis: str
+    sheet: _Sheet, corners: Strokes, edge: dict[str, object], palette: Palette, *, axis: str
 ) -> None:
     """Add a hatched area to one of the panels."""
     hatch = {"shape": "/", "size": 6, "solidity": 0.35}
     colours = {"fgcolor": palette.figure, "bgcolor": palette.page}
     _add_line(
-        figure,
+        sheet,
         [*corners, corners[0]],
         edge,
         axis=axis,
@@ -184,26 +213,25 @@ def _add_area(
     )
 
 
-def _draw_bars(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_bars(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
     """Draw answers as level bars with their numbers at the end."""
     heights = bar_heights(fan, geometry)
-    figure.add_trace(
-        go.Bar(
-            orientation="h",
-            x=bar_lengths(fan),
-            y=[(foot + top) / 2 for foot, top in heights],
-            width=[top - foot for foot, top in heights],
-            marker={"color": palette.people, "line": {"width": 0}},
-            text=[escape(text) for text in bar_texts(fan, geometry)],
-            textposition="outside",
-            textfont={"size": 12, "color": palette.soft},
-            cliponaxis=False,
-            hoverinfo="skip",
-        )
+    sheet.plot(
+        type="bar",
+        orientation="h",
+        x=bar_lengths(fan),
+        y=[(foot + top) / 2 for foot, top in heights],
+        width=[top - foot for foot, top in heights],
+        marker={"color": palette.people, "line": {"width": 0}},
+        text=[escape(text) for text in bar_texts(fan, geometry)],
+        textposition="outside",
+        textfont={"size": 12, "color": palette.soft},
+        cliponaxis=False,
+        hoverinfo="skip",
     )
 
 
-def _draw_curve(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_curve(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
     """Draw the curve, hatched inside the band where both arms agree."""
     curve = [(CURVE_REACH * length, height) for height, length in geometry.curve]
     if not curve:
@@ -213,13 +241,13 @@ def _draw_curve(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Pal
         if len(piece) > 1:
             area = [(CURVE_REACH * length, height) for height, length in piece]
             area = [(0.0, piece[0][0]), *area, (0.0, piece[-1][0])]
-            _add_area(figure, area, {"width": 0}, palette, axis="2")
-    _add_line(figure, curve, {"color": palette.figure, "width": 1.5})
-    _add_line(figure, [(0, 0), (0, 1)], {"color": palette.hair, "width": 1})
+            _add_area(sheet, area, {"width": 0}, palette, axis="2")
+    _add_line(sheet, curve, {"color": palette.figure, "width": 1.5})
+    _add_line(sheet, [(0, 0), (0, 1)], {"color": palette.hair, "width": 1})
 
 
 def _add_line(
-    figure: go.Figure,
+    sheet: _Sheet,
     points: Strokes,
     line: dict[str, object],
     *,
@@ -227,22 +255,21 @@ def _add_line(
     **look: object,
 ) -> None:
     """Add a line to a panel: the right one, or the left one for the axis ""."""
-    figure.add_trace(
-        go.Scatter(
-            x=[x for x, _ in points],
-            y=[y for _, y in points],
-            mode="lines",
-            line=line,
-            hoverinfo="skip",
-            cliponaxis=False,
-            xaxis=f"x{axis}",
-            yaxis=f"y{axis}",
-            **look,
-        )
+    sheet.plot(
+        type="scatter",
+        x=[x for x, _ in points],
+        y=[y for _, y in points],
+        mode="lines",
+        line=line,
+        hoverinfo="skip",
+        cliponaxis=False,
+        xaxis=f"x{axis}",
+        yaxis=f"y{axis}",
+        **look,
     )
 
 
-def _draw_endless(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_endless(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
     """Draw the interval from an endless universe as a dotted pair of lines."""
     if fan.endless_low is None or fan.endless_high is None:
         return
@@ -250,11 +277,11 @@ def _draw_endless(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: P
         if geometry.right.holds(end):
             height = geometry.right.height_of(end)
             _add_line(
-                figure,
+                sheet,
                 [(0, height), (1, height)],
                 {"color": palette.soft, "width": 1.5, "dash": "dot"},
             )
-    figure.add_annotation(
+    sheet.annotate(
         xref="paper",
         yref="paper",
         x=1,
@@ -268,7 +295,7 @@ def _draw_endless(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: P
     )
 
 
-def _draw_estimate(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
+def _draw_estimate(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
     """Draw the estimate's stroke: beside bars, across a column, and over the right panel."""
     stroke = {"color": palette.ink, "width": 2}
     start = 0.0 if fan.share else LEFT[1] * stroke_start(fan, geometry)
@@ -276,7 +303,7 @@ def _draw_estimate(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: 
         ((start, LEFT[1]), geometry.left_value),
         (RIGHT, geometry.right_value),
     ):
-        figure.add_shape(
+        sheet.draw(
             type="line",
             xref="paper",
             yref="paper",
@@ -289,13 +316,13 @@ def _draw_estimate(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: 
 
 
 def _write_ends(
-    figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette, height: int
+    sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette, height: int
 ) -> None:
     """Value, low and high at the right, spread where they would touch."""
-    room = height - figure.layout.margin.t - figure.layout.margin.b
+    room = height - sheet.margin("t") - sheet.margin("b")
     for label in end_labels(fan, geometry, gap=20 / room):
         text = escape(label.text)
-        figure.add_annotation(
+        sheet.annotate(
             xref="paper",
             yref="paper",
             x=1,
@@ -320,15 +347,15 @@ def _title_lines(title: list[str], note: list[str]) -> list[str]:
     return bold + [escape(line) for line in note]
 
 
-def _write_titles(figure: go.Figure, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
+def _write_titles(sheet: _Sheet, fan: Fan, geometry: FanGeometry, palette: Palette) -> None:
     """Write the two titles, side by side at every width, standing on the panels."""
-    shift = -figure.layout.margin.l if not fan.share else 0
+    shift = -sheet.margin("l") if not fan.share else 0
     left, right = _titles(fan, geometry)
     for x, xshift, lines, colour in (
         (LEFT[0], shift, left, palette.people),
         (RIGHT[0], 0, right, palette.figure),
     ):
-        figure.add_annotation(
+        sheet.annotate(
             xref="paper",
             yref="paper",
             x=x,

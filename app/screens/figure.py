@@ -56,9 +56,9 @@ with right:
         show_rails(data, request, question, rows)
 if figure is not None:
     with st.expander("How this number came about"):
-        figure_view.show_steps(steps_of(data, figure, file_name=file.file_name))
+        figure_view.show_steps(steps_of(data, figure, file_name=file.file_name, step=step))
     with st.expander("Numbers as a table"):
         figure_view.show_rows_table(rows, data.study.decimal_mark)
     with st.expander("Method"):
-        figure_view.show_method(data, figure)
+        figure_view.show_method(data, figure, step)
         show_limit_form(database(), opened.study)

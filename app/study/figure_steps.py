@@ -39,7 +39,9 @@ class Step:
     detail: str
 
 
-def steps_of(data: StudyData, figure: Figure, *, file_name: str) -> tuple[Step, ...]:
+def steps_of(
+    data: StudyData, figure: Figure, *, file_name: str, step: float | None = None
+) -> tuple[Step, ...]:
     """Return the steps from the file to the interval.
 
     Parameters
@@ -50,9 +52,11 @@ def steps_of(data: StudyData, figure: Figure, *, file_name: str) -> tuple[Step, 
         The figure.
     file_name : str
         Name of the fieldwork file.
+    step : float, optional
+        The step of the column it stands in.
     """
     mark, counts = data.study.decimal_mark, figure.counts
-    words = words_of(figure, mark)
+    words = words_of(figure, mark, step=step)
     return (
         Step("file", write_count(data.received, mark), file_name),
         Step("set aside", write_count(data.set_aside, mark), "answered nothing at all"),

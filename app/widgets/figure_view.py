@@ -111,7 +111,7 @@ def _table_row(row: FigureRow, decimal_mark: str) -> str:
     return f'<tr><th scope="row">{as_html(row.label)}</th>{inside}</tr>'
 
 
-def show_method(data: StudyData, figure: Figure) -> None:
+def show_method(data: StudyData, figure: Figure, step: float | None = None) -> None:
     """Show level, method, endless universe and house limit."""
     mark = data.study.decimal_mark
     level, method = st.columns(2)
@@ -150,7 +150,7 @@ def show_method(data: StudyData, figure: Figure) -> None:
     st.html(
         f'<p class="hr-soft">Method: {as_html(method_name(figure))}; '
         f"{as_html(method_words(data, figure))}. From an endless universe: "
-        f"{as_html(endless_words(figure, mark).between)}.</p>"
+        f"{as_html(endless_words(figure, mark, step=step).between)}.</p>"
         f'<p class="hr-soft">{as_html(limit_words(data.study.limit, mark))}.</p>'
     )
 

@@ -60,7 +60,7 @@ def test_health_is_told_as_json(server):
 
 
 def test_the_start_page_and_every_screen_are_the_platforms_page(server):
-    for path in ("/", *(f"/{name}" for name in SCREEN_PATHS)):
+    for path in ("/", *(f"/{name}" for name in SCREEN_PATHS[1:])):
         reply = request(server, path)
         assert reply.status == 200
         assert b'<div id="root">' in reply.content
@@ -281,3 +281,9 @@ def test_own_routes_keep_off_the_platforms_paths():
     paths = [route.path for route in own_routes(nothing_published)]
     assert {"/healthz", "/readout/{token}", "/robots.txt"} <= set(paths)
     assert not [path for path in paths if path.startswith(("/_stcore", "/static", "/media"))]
+
+
+def test_the_name_of_the_first_screen_leads_to_the_root():
+    routes = {route.path: route for route in own_routes(nothing_published)}
+    reply = ask(Starlette(routes=[routes["/studies"]]), http_scope("/studies"))
+    assert (reply.status, reply.header("location")) == (307, "/")

@@ -239,7 +239,9 @@ def test_in_short_says_headline_and_interval_of_the_first_three():
         f"Yes? (37 to 47{NB}%).",
     )
     nobody = frozen(yes_no(0, 400), YES).in_short
-    assert nobody == (f"None of 400 kiosks answered \u201cYes\u201d: Question Q4 (up to 1.0{NB}%).",)
+    assert nobody == (
+        f"None of 400 kiosks answered \u201cYes\u201d: Question Q4 (up to 1.0{NB}%).",
+    )
     census = frozen(yes_no(20, 22, chance(42)), kept(YES, headline="All asked")).in_short
     assert census == ("All asked.",)
 
