@@ -19,7 +19,7 @@ from estimators.cell_variances import Moments, variances_of_means
 from estimators.sample_designs import SampleDesign
 from estimators.share_evidence import ShareEvidence
 
-_MANY = 2**18  # numbers worked on at once
+_MANY = 2**21  # numbers worked on at once
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -109,10 +109,11 @@ def _of_groups(
     buckets: Buckets,
     design: SampleDesign,
 ) -> CellShares:
-    answered, silent = sums[..., 1:], sums[..., 0]
-    base = cell_bases(design, buckets, (answered.sum(axis=-1), silent), extremes)
+    answered, silent = np.ascontiguousarray(sums[..., 1:]), sums[..., 0]
+    heard = _over_answers(answered, np.ones((answered.shape[-1], 1)))[..., 0]
+    base = cell_bases(design, buckets, (heard, silent), extremes)
     share = _shares(answered, base)
-    left = None if whole is None else whole[:, :, None] - sums.sum(axis=-1)
+    left = None if whole is None else whole[:, :, None] - heard - silent
     variance = variances_of_means(_moments(answered, left, share, base), base)
     precision = precision_of_cells(variance, share * (1 - share), base)
     df = base.counts.degrees_of_freedom
@@ -164,7 +165,7 @@ def _moments(sums: Floats, left: Floats | None, share: Floats, base: CellBases) 
     base : CellBases
         The groups.
     """
-    others = _of_other_answers(sums)
+    others = _over_answers(sums, 1 - np.eye(sums.shape[-1]))
     rows = base.answered[:, :, None]
     both = sums[0] * others[0] / np.maximum(rows, 1)
     plain_total = (1 - share) * sums[0] - share * others[0]
@@ -198,10 +199,10 @@ def _moments(sums: Floats, left: Floats | None, share: Floats, base: CellBases) 
     )
 
 
-def _of_other_answers(sums: Floats) -> Floats:
-    """(k, B, G, A) sums over all answers but one."""
-    answers = sums.shape[-1]
-    return np.asarray(sums @ (np.ones((answers, answers)) - np.eye(answers)))
+def _over_answers(sums: Floats, which: Floats) -> Floats:
+    """(..., m) sums over the answers marked in the columns of ``which``, all in one product."""
+    flat = sums.reshape(-1, sums.shape[-1]) @ which
+    return np.asarray(flat.reshape(*sums.shape[:-1], -1))
 
 
 def _means(total: Floats, rows: Floats) -> Floats:

@@ -187,7 +187,9 @@ def _counted(part: _Part) -> dict[Pair, Floats]:
         shape = (kinds, buckets, SLOTS + part.groupings[name][1], *bundles[number].values())
         for place, question in enumerate(bundles[number]):
             others = tuple(3 + k for k in range(len(bundles[number])) if k != place)
-            pairs[question, name] = frozen(sums.reshape(shape).sum(axis=others))
+            margin = sums.reshape(shape).sum(axis=others) if others else sums.reshape(shape)
+            margin.setflags(write=False)
+            pairs[question, name] = margin
     return pairs
 
 

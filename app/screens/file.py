@@ -48,18 +48,18 @@ if opened.file is None:
     show_drop(opened.study.id, "Fieldwork file")
     st.stop()
 
-file = opened.file
+file, mark = opened.file, opened.study.decimal_mark
 deliveries = database().files(opened.study.id)
 try:
     read = read_file(file)
 except (FieldworkFileError, StoreError) as error:
     layout.problem(str(error))
     show_drop(opened.study.id, "Fieldwork file")
-    show_files(database(), deliveries, opened.study.decimal_mark)
+    show_files(database(), deliveries, mark)
     st.stop()
 st.html(
-    f'<p class="hr-sentence"><b>{write_count(file.rows)}</b> answers in '
-    f"<b>{write_count(file.columns)}</b> columns, from {as_html(file.file_name)}</p>"
+    f'<p class="hr-sentence"><b>{write_count(file.rows, mark)}</b> answers in '
+    f"<b>{write_count(file.columns, mark)}</b> columns, from {as_html(file.file_name)}</p>"
     f'<p class="hr-soft hr-small">received {file.received_at:%d %B %Y, %H:%M} UTC \u00b7 '
     f"SHA-256 {file.fingerprint[:16]}\u2026</p>"
 )

@@ -24,7 +24,7 @@ layout.show_later_message()
 layout.file_first(opened)
 data = opened.data()
 stored = opened.plan
-keeper = PlanKeeper(database(), opened.study.id, stored)
+keeper = PlanKeeper(database(), opened.study.id, stored, opened.study.decimal_mark)
 show_effect(data, plan_effect(stored.plan, data.built, data.answers))
 show_problems(data.built.problems)
 if stored.plan.provisional:

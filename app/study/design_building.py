@@ -54,7 +54,9 @@ class BuiltDesign:
     fallback: bool
 
 
-def build_design(plan: SamplingPlan, answers: pd.DataFrame) -> BuiltDesign:
+def build_design(
+    plan: SamplingPlan, answers: pd.DataFrame, *, decimal_mark: str = "."
+) -> BuiltDesign:
     """Return the design of a plan for the rows of a file.
 
     Parameters
@@ -63,8 +65,10 @@ def build_design(plan: SamplingPlan, answers: pd.DataFrame) -> BuiltDesign:
         What the manager told.
     answers : DataFrame
         (n rows) the rows figures are made from.
+    decimal_mark : str
+        "." or ",": the language of the numbers in what is said against the plan.
     """
-    problems = check_plan(plan, answers)
+    problems = check_plan(plan, answers, decimal_mark=decimal_mark)
     if any(problem.blocks for problem in problems):
         return _fallback(answers, problems)
     try:

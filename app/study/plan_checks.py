@@ -32,7 +32,9 @@ class PlanProblem:
     blocks: bool = True
 
 
-def check_plan(plan: SamplingPlan, answers: pd.DataFrame) -> tuple[PlanProblem, ...]:
+def check_plan(
+    plan: SamplingPlan, answers: pd.DataFrame, *, decimal_mark: str = "."
+) -> tuple[PlanProblem, ...]:
     """Return every contradiction between the plan and the rows figures are made from.
 
     Parameters
@@ -41,9 +43,11 @@ def check_plan(plan: SamplingPlan, answers: pd.DataFrame) -> tuple[PlanProblem, 
         What the manager told.
     answers : DataFrame
         (n rows) the answers as read.
+    decimal_mark : str
+        "." or ",": the language of the numbers in the sentences.
     """
     checks = (_universe_problems, _strata_problems, _weight_problems, _cluster_problems)
-    return tuple(problem for check in checks for problem in check(plan, answers))
+    return tuple(problem for check in checks for problem in check(plan, answers, decimal_mark))
 
 
 def draws_repeat(plan: SamplingPlan) -> bool:
@@ -85,35 +89,37 @@ def _number_label(value: float) -> str:
     return str(int(value)) if whole else repr(float(value))
 
 
-def _answers(count: int) -> str:
-    return "1 answer" if count == 1 else f"{write_count(count)} answers"
+def _answers(count: int, mark: str) -> str:
+    return "1 answer" if count == 1 else f"{write_count(count, mark)} answers"
 
 
 def _have(count: int) -> str:
     return "has" if count == 1 else "have"
 
 
-def _universe_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+def _universe_problems(
+    plan: SamplingPlan, answers: pd.DataFrame, mark: str
+) -> Iterator[PlanProblem]:
     size, rows = plan.universe_size, len(answers)
     if size is not None and size < rows and not draws_repeat(plan):
         twice = plan.method is SamplingMethod.CHANCE
         yield PlanProblem(
             "universe_size",
-            f"The file has {_answers(rows)} but the universe only "
-            f"{write_count(size)}: correct the universe"
+            f"The file has {_answers(rows, mark)} but the universe only "
+            f"{write_count(size, mark)}: correct the universe"
             + (", or say that each could be drawn twice." if twice else "."),
         )
     total = universe_from_strata(plan)
     if size is not None and total is not None and total != size:
         yield PlanProblem(
             "universe_size",
-            f"The strata add up to {write_count(total)} but the universe is given as "
-            f"{write_count(size)}: correct one of them. Until then the strata count.",
+            f"The strata add up to {write_count(total, mark)} but the universe is given as "
+            f"{write_count(size, mark)}: correct one of them. Until then the strata count.",
             blocks=False,
         )
 
 
-def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame, mark: str) -> Iterator[PlanProblem]:
     column = plan.strata_column
     if not column:
         return
@@ -121,18 +127,18 @@ def _strata_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Plan
         yield PlanProblem("strata_column", f"The file has no column {column}: choose another.")
         return
     asked = stratum_rows(plan, answers)
-    yield from _unlabelled_rows(column, answers)
+    yield from _unlabelled_rows(column, answers, mark)
     if not _sizes_are_needed(plan):
         return
     sizes = {s.label: s.population_size for s in plan.strata}
     for label, rows in asked.items():
-        yield from _stratum_problem(label, rows, sizes.get(label), plan)
+        yield from _stratum_problem(label, rows, sizes.get(label), plan, mark)
     for label, size in sizes.items():
         if label not in asked:
-            yield from _empty_stratum_problem(label, size)
+            yield from _empty_stratum_problem(label, size, mark)
 
 
-def _empty_stratum_problem(label: str, size: int | None) -> Iterator[PlanProblem]:
+def _empty_stratum_problem(label: str, size: int | None, mark: str) -> Iterator[PlanProblem]:
     if size is None:
         yield PlanProblem(
             "strata",
@@ -142,7 +148,7 @@ def _empty_stratum_problem(label: str, size: int | None) -> Iterator[PlanProblem
     elif size:
         yield PlanProblem(
             "strata",
-            f"{label}: {write_count(size)} in the universe but no answer in the file: "
+            f"{label}: {write_count(size, mark)} in the universe but no answer in the file: "
             "merge it with another stratum or take it out.",
         )
 
@@ -153,33 +159,33 @@ def _sizes_are_needed(plan: SamplingPlan) -> bool:
     return plan.method is not SamplingMethod.GROUPS
 
 
-def _unlabelled_rows(column: str, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+def _unlabelled_rows(column: str, answers: pd.DataFrame, mark: str) -> Iterator[PlanProblem]:
     blank = int((label_texts(answers[column]) == "").sum())
     if blank:
         yield PlanProblem(
             "strata_column",
-            f"{_answers(blank)} {_have(blank)} no {column}: fill it in the file, or do not "
+            f"{_answers(blank, mark)} {_have(blank)} no {column}: fill it in the file, or do not "
             "separate the draw by it.",
         )
 
 
 def _stratum_problem(
-    label: str, rows: int, size: int | None, plan: SamplingPlan
+    label: str, rows: int, size: int | None, plan: SamplingPlan, mark: str
 ) -> Iterator[PlanProblem]:
     if size is None:
         yield PlanProblem(
             "strata",
-            f"{label}: {_answers(rows)} but no universe count: type it or merge the stratum.",
+            f"{label}: {_answers(rows, mark)} but no universe count: type it or merge the stratum.",
         )
     elif size < rows and not draws_repeat(plan):
         yield PlanProblem(
             "strata",
-            f"{label}: {_answers(rows)} but only {write_count(size)} in the universe: "
+            f"{label}: {_answers(rows, mark)} but only {write_count(size, mark)} in the universe: "
             "correct the count.",
         )
 
 
-def _weight_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+def _weight_problems(plan: SamplingPlan, answers: pd.DataFrame, mark: str) -> Iterator[PlanProblem]:
     column = plan.weights_column
     if not column:
         return
@@ -192,12 +198,14 @@ def _weight_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Plan
         rows = ", ".join(str(i + 1) for i in bad[:5]) + (" ..." if bad.size > 5 else "")
         yield PlanProblem(
             "weights_column",
-            f"{write_count(bad.size)} weights in {column} are missing, no number, zero or negative "
-            f"(answers {rows}): mend them in the file, or choose another column.",
+            f"{write_count(bad.size, mark)} weights in {column} are missing, no number, zero or "
+            f"negative (answers {rows}): mend them in the file, or choose another column.",
         )
 
 
-def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[PlanProblem]:
+def _cluster_problems(
+    plan: SamplingPlan, answers: pd.DataFrame, mark: str
+) -> Iterator[PlanProblem]:
     if plan.method is not SamplingMethod.GROUPS:
         return
     column = plan.clusters_column
@@ -211,14 +219,14 @@ def _cluster_problems(plan: SamplingPlan, answers: pd.DataFrame) -> Iterator[Pla
     if (blank := int((labels == "").sum())) > 0:
         yield PlanProblem(
             "clusters_column",
-            f"{_answers(blank)} {_have(blank)} no {column}: fill it in the file, or choose "
+            f"{_answers(blank, mark)} {_have(blank)} no {column}: fill it in the file, or choose "
             "another column.",
         )
-    yield from _group_count_problems(plan, int(labels[labels != ""].nunique()))
-    yield from _straddling_groups(plan, answers, labels)
+    yield from _group_count_problems(plan, int(labels[labels != ""].nunique()), mark)
+    yield from _straddling_groups(plan, answers, labels, mark)
 
 
-def _group_count_problems(plan: SamplingPlan, groups: int) -> Iterator[PlanProblem]:
+def _group_count_problems(plan: SamplingPlan, groups: int, mark: str) -> Iterator[PlanProblem]:
     """Compare the groups of the file with those of the universe."""
     if groups == 1:
         yield PlanProblem(
@@ -231,20 +239,20 @@ def _group_count_problems(plan: SamplingPlan, groups: int) -> Iterator[PlanProbl
     if there is not None and there < groups:
         yield PlanProblem(
             "universe_clusters",
-            f"The file has {write_count(groups)} groups but the universe only "
-            f"{write_count(there)}: correct the number.",
+            f"The file has {write_count(groups, mark)} groups but the universe only "
+            f"{write_count(there, mark)}: correct the number.",
         )
     elif there is not None and plan.strata_column:
         yield PlanProblem(
             "universe_clusters",
-            f"Groups were drawn separately by {plan.strata_column}, so {write_count(there)} in all "
-            "do not say how many each had: they are counted as endless. Leave the number out.",
+            f"Groups were drawn separately by {plan.strata_column}, so {write_count(there, mark)} "
+            "in all do not say how many each had: they are counted as endless. Leave it out.",
             blocks=False,
         )
 
 
 def _straddling_groups(
-    plan: SamplingPlan, answers: pd.DataFrame, groups: pd.Series
+    plan: SamplingPlan, answers: pd.DataFrame, groups: pd.Series, mark: str
 ) -> Iterator[PlanProblem]:
     """Find groups that lie in two strata: they cannot have been drawn within one."""
     if plan.strata_column not in answers:
@@ -252,7 +260,7 @@ def _straddling_groups(
     strata = label_texts(answers[plan.strata_column]).groupby(groups).nunique()
     straddling = [str(label) for label in strata.index[strata > 1] if label != ""]
     if straddling:
-        more = f" and {write_count(len(straddling) - 1)} more" if len(straddling) > 1 else ""
+        more = f" and {write_count(len(straddling) - 1, mark)} more" if len(straddling) > 1 else ""
         yield PlanProblem(
             "clusters_column",
             f"{straddling[0]}{more}: its answers have different {plan.strata_column}, but a group "

@@ -66,7 +66,8 @@ def prepare_study(
     """
     answered = _answered_anything(questions, answers)
     kept = answers[answered if answered.any() else ~answered].reset_index(drop=True)
-    return StudyData(study, questions, plan, kept, len(answers), build_design(plan, kept))
+    built = build_design(plan, kept, decimal_mark=study.decimal_mark)
+    return StudyData(study, questions, plan, kept, len(answers), built)
 
 
 def _answered_anything(questions: tuple[Question, ...], answers: pd.DataFrame) -> pd.Series:

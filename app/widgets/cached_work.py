@@ -12,8 +12,11 @@ from pathlib import Path
 import streamlit as st
 
 from app.intake import FieldworkFile, Reading, read_fieldwork_file
+from app.sharing.readout_page import render_page
 from app.store import Database, StoredPlan, StoredQuestion, open_database
+from app.study.frozen import FrozenReadout
 from app.study.questions import Question
+from app.study.records import from_json
 from app.study.sampling_plan import SamplingPlan
 from app.study.study import Study, StudyFile
 from app.study.study_data import StudyData, prepare_study
@@ -57,7 +60,10 @@ def study_data(
     versions = " ".join(f"{len(q.question.key)}:{q.question.key}:{q.version}" for q in asked)
     name = f"{study.id} {stored.version} {versions}"
     questions = tuple(q.question for q in asked)
-    data = _prepare(name, file.fingerprint, file.file_name, file.reading, questions, stored.plan)
+    mark = study.decimal_mark
+    data = _prepare(
+        name, file.fingerprint, file.file_name, file.reading, mark, questions, stored.plan
+    )
     return replace(data, study=study)
 
 
@@ -67,8 +73,15 @@ def _prepare(
     fingerprint: str,
     file_name: str,
     reading: str,
+    mark: str,
     _questions: tuple[Question, ...],
     _plan: SamplingPlan,
 ) -> StudyData:
     read = _read(fingerprint, file_name, reading)
-    return prepare_study(_NOBODY, _questions, _plan, read.answers)
+    return prepare_study(replace(_NOBODY, decimal_mark=mark), _questions, _plan, read.answers)
+
+
+@st.cache_data(max_entries=64, show_spinner=False)
+def page_as_file(frozen: str) -> str:
+    """Return a published readout as one file that needs nothing else, from its frozen values."""
+    return render_page(from_json(FrozenReadout, frozen), style_href=None)

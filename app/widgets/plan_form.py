@@ -58,7 +58,7 @@ def _show_size(keeper: PlanKeeper) -> None:
     plan = keeper.plan
     by_strata = universe_from_strata(plan)
     known = known_universe(plan)
-    fill("plan_size", write_count(plan.universe_size) if plan.universe_size else "")
+    fill("plan_size", write_count(plan.universe_size, keeper.mark) if plan.universe_size else "")
     take = ("plan_size", "universe_size", partial(read_count, name="How many are there"))
     st.text_input(
         "How many are there?",
@@ -70,7 +70,7 @@ def _show_size(keeper: PlanKeeper) -> None:
     )
     show_refusal("plan_size", keeper.take, take)
     if by_strata is not None and by_strata != plan.universe_size:
-        layout.say(f"The strata add up to {write_count(by_strata)}; that counts.")
+        layout.say(f"The strata add up to {write_count(by_strata, keeper.mark)}; that counts.")
     if known is None:
         layout.say("Not known: the universe counts as endless, and totals are not possible.")
 
@@ -136,7 +136,7 @@ def show_groups(keeper: PlanKeeper, questions: tuple[Question, ...], answers: pd
     with right:
         st.subheader("How many groups are there in all?", anchor="universe_clusters")
         number = keeper.plan.universe_clusters
-        fill("plan_clusters", write_count(number) if number else "")
+        fill("plan_clusters", write_count(number, keeper.mark) if number else "")
         take = (
             "plan_clusters",
             "universe_clusters",

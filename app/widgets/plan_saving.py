@@ -25,9 +25,14 @@ class PlanKeeper:
         The study.
     stored : StoredPlan
         The plan as this run of the screen shows it.
+    mark : str
+        Decimal mark of the study, for the numbers in its fields.
     """
 
-    def __init__(self, database: Database, study_id: str, stored: StoredPlan) -> None:
+    def __init__(
+        self, database: Database, study_id: str, stored: StoredPlan, mark: str = "."
+    ) -> None:
+        self.mark = mark
         self._database = database
         self._study_id = study_id
         self._stored = stored

@@ -36,10 +36,10 @@ def _show_stratum(
         with words:
             st.html(
                 f'<p class="hw-tight"><b>{as_html(label)}</b> '
-                f'<span class="hr-soft">{write_count(asked)} of</span></p>'
+                f'<span class="hr-soft">{write_count(asked, keeper.mark)} of</span></p>'
             )
         with field:
-            fill(key, write_count(size) if size else "")
+            fill(key, write_count(size, keeper.mark) if size else "")
             st.text_input(
                 f"{as_typed(label)}: how many are there?",
                 key=key,
@@ -75,7 +75,7 @@ def _show_paste(keeper: PlanKeeper, labels: list[str]) -> None:
         return
     pasted = read_pasted_counts(text)
     unknown = [label for label, _ in pasted.counts if label not in labels]
-    st.html(_preview(pasted, unknown))
+    st.html(_preview(pasted, unknown, keeper.mark))
     if pasted.counts and not pasted.problems:
         st.button(
             "Use these counts",
@@ -85,10 +85,10 @@ def _show_paste(keeper: PlanKeeper, labels: list[str]) -> None:
         )
 
 
-def _preview(pasted: PastedCounts, unknown: list[str]) -> str:
+def _preview(pasted: PastedCounts, unknown: list[str], mark: str) -> str:
     rows = "".join(
         f'<tr><th scope="row">{as_html(label)}</th>'
-        f'<td class="hr-count">{write_count(count)}</td>'
+        f'<td class="hr-count">{write_count(count, mark)}</td>'
         f"<td>{'no answers in the file' if label in unknown else ''}</td></tr>"
         for label, count in pasted.counts
     )

@@ -11,11 +11,11 @@ from app.sharing.link_tokens import hash_token, make_token
 from app.sharing.readout_page import render_page
 from app.sharing.readout_style import READOUT_STYLE
 from app.store import Database, StoreError
-from app.study.frozen import FrozenReadout
-from app.study.records import from_json, to_json
+from app.study.records import to_json
 from app.study.study import KeptFigure, Readout
 from app.study.study_data import StudyData
 from app.widgets import layout
+from app.widgets.cached_work import page_as_file
 from app.widgets.plain_text import as_html
 from estimators import METHODS_VERSION
 
@@ -152,7 +152,7 @@ def _link_words(readout: Readout) -> str:
 
 
 def _show_actions(database: Database, readout: Readout) -> None:
-    page = render_page(from_json(FrozenReadout, readout.frozen), style_href=None)
+    page = page_as_file(readout.frozen)
     st.download_button(
         "Page as a file",
         page.encode(),

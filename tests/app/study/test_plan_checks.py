@@ -179,3 +179,11 @@ def test_the_universe_comes_from_complete_strata_else_from_its_field():
     assert known_universe(chance(7, strata_column="area", strata=strata(N=3, S=None))) == 7
     assert universe_from_strata(chance(7, strata=strata(N=3))) is None
     assert known_universe(chance()) is None
+
+
+def test_counts_are_written_in_the_language_of_the_study():
+    file = pd.DataFrame({"area": ["A"] * 1200})
+    plan = chance(1100)
+    for mark, counts in ((".", ("1,200", "1,100")), (",", ("1.200", "1.100"))):
+        (problem,) = check_plan(plan, file, decimal_mark=mark)
+        assert all(count in problem.sentence for count in counts)
