@@ -19,7 +19,7 @@ from estimators.cell_variances import Moments, variances_of_means
 from estimators.sample_designs import SampleDesign
 from estimators.share_evidence import ShareEvidence
 
-_MANY = 2**21  # numbers worked on at once
+_MANY = 2**18  # numbers worked on at once
 
 
 @dataclass(frozen=True, slots=True, eq=False)

@@ -31,7 +31,7 @@ from estimators.sampling_stages import sums_by
 Changes = NDArray[np.floating]
 ReplicateMethod = Literal["bootstrap", "jackknife"]
 
-_ENTRIES = 2**19  # factors held at a time
+_ENTRIES = 2**21  # factors held at a time
 _ALL = 1 - 1e-12
 
 

@@ -21,6 +21,7 @@ from estimators.array_checks import Codes, Floats
 Changes = NDArray[np.float32]
 
 _BITS = np.uint64(32)
+_PIECE = 2**17  # factors made at a time, few enough for the cache of a processor
 _LEAST = 0.5  # a unit without another in its stratum never counts less than this part of itself
 
 
@@ -56,23 +57,28 @@ class Resampling:
     def changes(self, chance: np.random.Generator, replicates: int) -> Changes:
         """(replicates, K) factors minus 1: mean 0, and the variance of a sum they give is right."""
         members, redrawn = len(self.group), len(self.order)
-        if redrawn == 0:
-            return np.zeros((replicates, members), np.float32)
-        shape = (replicates, len(self.sizes))
+        in_place = redrawn == members and bool((self.order == np.arange(members)).all())
+        place = slice(None) if in_place else self.order
+        changes = np.zeros((replicates, members), np.float32)
+        step = max(1, _PIECE // members)
+        for start in range(0, replicates if redrawn else 0, step):
+            piece = min(step, replicates - start)
+            counts = self._counts(chance, piece).astype(np.float32)
+            counts *= self.stretches
+            counts -= self.drops
+            changes[start : start + piece, place] = counts
+        return changes
+
+    def _counts(self, chance: np.random.Generator, replicates: int) -> NDArray[np.intp]:
+        """(replicates, J) how often each member is drawn."""
+        redrawn, shape = len(self.order), (replicates, len(self.sizes))
         places = chance.integers(0, 2**32, shape, dtype=np.uint32).astype(np.uint64)
-        places *= self.sizes
+        places *= self.sizes  # a 32-bit fraction of the size of the group
         places >>= _BITS
         places += self.starts
         places += (np.arange(replicates, dtype=np.uint64) * np.uint64(redrawn))[:, None]
         drawn = np.bincount(places.view(np.int64).ravel(), minlength=replicates * redrawn)
-        found = drawn.reshape(replicates, redrawn).astype(np.float32)
-        found *= self.stretches
-        found -= self.drops
-        if redrawn == members and bool((self.order == np.arange(members)).all()):
-            return found
-        changes = np.zeros((replicates, members), np.float32)
-        changes[:, self.order] = found
-        return changes
+        return drawn.reshape(replicates, redrawn)
 
 
 def resampling(group: Codes, present: NDArray[np.bool_], parts: Floats) -> Resampling:

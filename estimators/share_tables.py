@@ -106,8 +106,8 @@ def tabulate(
 
     Every number is that of :func:`estimators.proportion` for the same cell, with the rows without
     an answer as not answered. All designs take the same fast way: shares and their variances
-    follow from sums by cell, stratum and cluster. Where these sums would take much room, as with
-    very many clusters, pairs of a question and a grouping are counted one after the other.
+    follow from sums by cell, stratum and cluster. Where these sums would take much room, with more
+    than a thousand clusters, questions are counted one after the other.
 
     Parameters
     ----------
@@ -145,8 +145,9 @@ def tabulate(
     level = as_confidence(confidence)
     check_method(method)
     refuse_unknown_codes(codes, answers, groupings)
-    buckets = len(design.stages.rows_drawn if design.stages.unit is not None else ())
-    portions = [answers] if buckets <= _MANY_UNITS else [{q: answers[q]} for q in answers]
+    portions = [answers]
+    if _has_many_units(design) and isinstance(answers, Mapping):
+        portions = [{question: answers[question]} for question in answers]
     counted = (
         cells_of(
             portion, groupings, design, where=where, codes=_codes_of(codes, portion, groupings)
@@ -197,6 +198,10 @@ def share_table(
     level = as_confidence(confidence)
     check_method(method)
     return _table(_blocks_of(cells, design, level, method), design, level, method)
+
+
+def _has_many_units(design: SampleDesign) -> bool:
+    return design.stages.unit is not None and len(design.stages.rows_drawn) > _MANY_UNITS
 
 
 def _codes_of(codes: Mapping[str, int] | None, *given: Mapping[str, Any]) -> dict[str, int] | None:

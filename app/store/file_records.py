@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import replace
+from datetime import datetime
 from pathlib import Path
 from typing import Any
 
@@ -10,8 +12,10 @@ from sqlalchemy import Connection, Row, insert, select, update
 
 from app.store.errors import UnknownFileError
 from app.store.file_bytes import fingerprint_of
+from app.store.question_records import put_questions
 from app.store.records import Records, check_study, check_version, find_row, new_id, touch_study
 from app.store.schema import files
+from app.study.questions import Question
 from app.study.study import StudyFile
 
 
@@ -68,6 +72,7 @@ class FileRecords(Records):
         reading: str,
         rows: int,
         columns: int,
+        questions: Iterable[Question] | None = None,
     ) -> StudyFile:
         """Keep an uploaded file; figures are made from it from now on.
 
@@ -85,6 +90,8 @@ class FileRecords(Records):
             JSON of how it is read.
         rows, columns : int
             Size of the answers as read.
+        questions : iterable of Question, optional
+            What the study asks from now on, kept in the same transaction.
 
         Raises
         ------
@@ -109,9 +116,18 @@ class FileRecords(Records):
             touch_study(connection, study_id, now)
             self._bytes.move_into_place(aside, file.fingerprint)
             _leave_current(connection, study_id)
+            _put_questions(connection, study_id, questions, now)
             return _put(connection, file)
 
-    def save_reading(self, file: StudyFile, *, reading: str, rows: int, columns: int) -> StudyFile:
+    def save_reading(
+        self,
+        file: StudyFile,
+        *,
+        reading: str,
+        rows: int,
+        columns: int,
+        questions: Iterable[Question] | None = None,
+    ) -> StudyFile:
         """Keep another way of reading a file.
 
         Parameters
@@ -122,6 +138,8 @@ class FileRecords(Records):
             JSON of how it is read.
         rows, columns : int
             Size of the answers as now read.
+        questions : iterable of Question, optional
+            What the study asks from now on, kept in the same transaction.
 
         Raises
         ------
@@ -140,10 +158,20 @@ class FileRecords(Records):
             check_version(find_row(connection, files, file.id, UnknownFileError), file.version, now)
             connection.execute(update(files).where(files.c.id == file.id).values(changes))
             touch_study(connection, file.study_id, now)
+            _put_questions(connection, file.study_id, questions, now)
             return _file_from(find_row(connection, files, file.id, UnknownFileError))
 
-    def make_current(self, file_id: str) -> StudyFile:
+    def make_current(
+        self, file_id: str, *, questions: Iterable[Question] | None = None
+    ) -> StudyFile:
         """Make figures from this file from now on.
+
+        Parameters
+        ----------
+        file_id : str
+            The file.
+        questions : iterable of Question, optional
+            What the study asks from now on, kept in the same transaction.
 
         Raises
         ------
@@ -154,8 +182,17 @@ class FileRecords(Records):
             row = find_row(connection, files, file_id, UnknownFileError)
             _leave_current(connection, row.study_id)
             connection.execute(update(files).where(files.c.id == file_id).values(current=True))
-            touch_study(connection, row.study_id, self._connections.now())
+            now = self._connections.now()
+            touch_study(connection, row.study_id, now)
+            _put_questions(connection, row.study_id, questions, now)
             return replace(_file_from(row), current=True)
+
+
+def _put_questions(
+    connection: Connection, study_id: str, new: Iterable[Question] | None, now: datetime
+) -> None:
+    if new is not None:
+        put_questions(connection, study_id, new, now)
 
 
 def _leave_current(connection: Connection, study_id: str) -> None:

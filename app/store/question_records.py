@@ -83,25 +83,10 @@ class QuestionRecords(Records):
             When the study is not there.
         """
         now = self._connections.now()
-        bodies = [(question.key, to_json(question)) for question in new]
+        kept = tuple(new)
         with self._connections.writing() as connection:
             touch_study(connection, study_id, now)
-            of_study = questions.c.study_id == study_id
-            last = connection.scalar(select(func.max(questions.c.version)).where(of_study)) or 0
-            connection.execute(delete(questions).where(of_study))
-            rows = [
-                {
-                    "study_id": study_id,
-                    "key": key,
-                    "position": position,
-                    "question": body,
-                    "version": last + 1,
-                    "changed_at": now,
-                }
-                for position, (key, body) in enumerate(bodies)
-            ]
-            if rows:
-                connection.execute(insert(questions), rows)
+            put_questions(connection, study_id, kept, now)
 
     def save_question(self, study_id: str, question: Question, *, version: int) -> StoredQuestion:
         """Keep one changed question.
@@ -148,6 +133,28 @@ class QuestionRecords(Records):
         with self._connections.writing() as connection:
             touch_study(connection, study_id, now)
             return tuple(_save(connection, study_id, one, now) for one in changed)
+
+
+def put_questions(
+    connection: Connection, study_id: str, new: Iterable[Question], now: datetime
+) -> None:
+    """Put questions in place of all the study had, within a transaction somebody opened."""
+    of_study = questions.c.study_id == study_id
+    last = connection.scalar(select(func.max(questions.c.version)).where(of_study)) or 0
+    connection.execute(delete(questions).where(of_study))
+    rows = [
+        {
+            "study_id": study_id,
+            "key": question.key,
+            "position": position,
+            "question": to_json(question),
+            "version": last + 1,
+            "changed_at": now,
+        }
+        for position, question in enumerate(new)
+    ]
+    if rows:
+        connection.execute(insert(questions), rows)
 
 
 def _save(

@@ -51,10 +51,10 @@ def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> D
         When the file cannot be read.
     """
     name = PurePath(file_name.replace("\\", "/")).name or "file"
-    read = read_fieldwork_file(data, file_name=name)
-    guessed = guess_questions(read.answers, read.question_texts)
+    read = read_fieldwork_file(data, file_name=name, reading=_as_before(database, study_id))
     study = study_id or database.create_study(_name_from(name)).id
     try:
+        questions, changes = _taken_over(database, study, read)
         database.add_file(
             study,
             data,
@@ -62,13 +62,20 @@ def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> D
             reading=read.reading.to_json(),
             rows=len(read.answers),
             columns=read.answers.shape[1],
+            questions=questions,
         )
-        return Delivery(study, _take_over(database, study, guessed))
     except StoreError:
         if not study_id:  # a study made for this file goes with it
             with suppress(StoreError):
                 database.delete_study(study)
         raise
+    return Delivery(study, changes)
+
+
+def _as_before(database: Database, study_id: str) -> Reading | None:
+    """Return what was decided about columns of the file before, for the next delivery."""
+    file = database.current_file(study_id) if study_id else None
+    return Reading.from_json(file.reading).for_another_file() if file is not None else None
 
 
 def use_again(database: Database, file: StudyFile) -> Delivery:
@@ -82,20 +89,21 @@ def use_again(database: Database, file: StudyFile) -> Delivery:
     data = database.file_bytes(file.fingerprint)
     reading = Reading.from_json(file.reading)
     read = read_fieldwork_file(data, file_name=file.file_name, reading=reading)
+    questions, changes = _taken_over(database, file.study_id, read)
+    database.make_current(file.id, questions=questions)
+    return Delivery(file.study_id, changes)
+
+
+def _taken_over(
+    database: Database, study_id: str, read: FieldworkFile
+) -> tuple[tuple[Question, ...], tuple[str, ...]]:
+    """Return what a file asks, with all that was settled before, and what changed."""
     guessed = guess_questions(read.answers, read.question_texts)
-    database.make_current(file.id)
-    return Delivery(file.study_id, _take_over(database, file.study_id, guessed))
-
-
-def _take_over(database: Database, study_id: str, guessed: tuple[Question, ...]) -> tuple[str, ...]:
-    """Keep what a file asks, with all that was settled before; return what changed."""
     before = database.questions(study_id)
     if not before:
-        database.replace_questions(study_id, guessed)
-        return ()
+        return guessed, ()
     carried = carry_over(before, guessed)
-    database.replace_questions(study_id, carried.questions)
-    return tuple(carried.sentences)
+    return carried.questions, tuple(carried.sentences)
 
 
 def read_again(database: Database, file: StudyFile, reading: Reading) -> FieldworkFile:
@@ -108,14 +116,14 @@ def read_again(database: Database, file: StudyFile, reading: Reading) -> Fieldwo
     """
     data = database.file_bytes(file.fingerprint)
     read = read_fieldwork_file(data, file_name=file.file_name, reading=reading)
-    guessed = guess_questions(read.answers, read.question_texts)
+    questions, _changes = _taken_over(database, file.study_id, read)
     database.save_reading(
         file,
         reading=read.reading.to_json(),
         rows=len(read.answers),
         columns=read.answers.shape[1],
+        questions=questions,
     )
-    _take_over(database, file.study_id, guessed)
     return read
 
 
