@@ -19,6 +19,11 @@ QUOTA_SAMPLE = Caution(
     "The respondents were not drawn at random: the interval shows what a random sample of this "
     "size would give, and leaves out any error from the way they were chosen.",
 )
+SYSTEMATIC_SAMPLE = Caution(
+    "systematic_sample",
+    "Every so-many-th unit of a list was taken: the interval compares neighbours in the list, "
+    "which is wrong where the list goes up and down in step with the sampling.",
+)
 ENDLESS_FIRST_STAGE = Caution(
     "endless_first_stage",
     "It is not known how many clusters (the groups that were drawn, such as shops or sailings) "

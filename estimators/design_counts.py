@@ -186,7 +186,7 @@ def _single_unit_strata(
 ) -> list[Caution]:
     """Name strata with one unit that is not all there is."""
     single = (units == 1) & (members > 0) & (fractions < _ALL)
-    if not single.any() or len(units) == 1:
+    if not single.any() or len(units) == 1 or not stages.stratum_names:
         return []
     return [
         caution.single_cluster_strata([stages.stratum_names[h] for h in np.flatnonzero(single)])

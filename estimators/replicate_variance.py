@@ -11,7 +11,6 @@ from numpy.typing import ArrayLike
 
 from estimators.array_checks import Floats, numbers_of_base
 from estimators.errors import InputError
-from estimators.linearized_values import mean_in_base
 from estimators.means_and_totals import ratio, total
 from estimators.quantiles import quantile
 from estimators.replicate_weights import ReplicateWeights
@@ -52,11 +51,13 @@ def replicate_sums(values: ArrayLike, replicates: ReplicateWeights) -> Floats:
             "must have one row for each respondent and one column for each sum",
             "reshape one column to (n, 1)",
         )
-    n, inside = replicates.base.design.n, replicates.base.inside
-    weighted = np.empty((n, columns.shape[1]))
-    for k, column in enumerate(columns.T):
-        weighted[:, k] = replicates.weights * numbers_of_base(column, f"values[:, {k}]", n, inside)
-    return _summed(weighted, replicates)
+    numbers, inside = columns.astype(np.float64, copy=False), replicates.base.inside
+    plain = inside is None and len(numbers) == replicates.base.design.n
+    if not (plain and np.isfinite(numbers).all()):
+        n = replicates.base.design.n
+        checked = [numbers_of_base(c, f"values[:, {k}]", n, inside) for k, c in enumerate(columns.T)]
+        numbers = np.stack(checked, axis=1)
+    return _summed(numbers * replicates.weights[:, None], replicates)
 
 
 def replicate_estimates(
@@ -183,13 +184,12 @@ def _summed(weighted: Floats, replicates: ReplicateWeights) -> Floats:
         columns = np.stack([sums_by(stages.unit, column, units) for column in weighted.T], axis=1)
     if replicates.method == "bootstrap":
         columns = columns.astype(np.float32)
-    found = np.empty((replicates.replicates, weighted.shape[1]))
+    found = np.empty((replicates.replicates, weighted.shape[1]), columns.dtype)
     start = 0
     for changes in replicates.changes():
-        found[start : start + len(changes)] = changes @ columns
+        np.matmul(changes, columns, out=found[start : start + len(changes)])
         start += len(changes)
-    found += weighted.sum(axis=0)
-    return found
+    return found + weighted.sum(axis=0)
 
 
 def _ratios(values: ArrayLike, denominator: ArrayLike, replicates: ReplicateWeights) -> Floats:
@@ -208,12 +208,12 @@ def _totals(values: ArrayLike, replicates: ReplicateWeights) -> Floats:
     """(R,) totals; weights scaled to a universe always add up to it."""
     base = replicates.base
     numbers = numbers_of_base(values, "values", base.design.n, base.inside)
-    value = total(numbers, base.design, where=base.where, answered=base.inside).value
+    total(numbers, base.design, where=base.where, answered=base.inside)  # refuses what it refuses
     if not base.design.scaled_weights:
         return _summed((base.weights * numbers)[:, None], replicates)[:, 0]
     columns = np.stack([base.weights * numbers, base.row_weights], axis=1)
     sums = _summed(columns, replicates)
-    return sums[:, 0] / sums[:, 1] * float(base.row_weights.sum()) + 0.0 * value
+    return sums[:, 0] / sums[:, 1] * float(base.row_weights.sum())
 
 
 def _quantiles(values: ArrayLike, probability: float, replicates: ReplicateWeights) -> Floats:

@@ -63,17 +63,18 @@ class Resampling:
         step = max(1, _PIECE // members)
         for start in range(0, replicates if redrawn else 0, step):
             piece = min(step, replicates - start)
-            counts = self._counts(chance, piece).astype(np.float32)
-            counts *= self.stretches
-            counts -= self.drops
-            changes[start : start + piece, place] = counts
+            found = self._counts(chance, piece).astype(np.float32)
+            found *= self.stretches
+            found -= self.drops
+            changes[start : start + piece, place] = found
         return changes
 
     def _counts(self, chance: np.random.Generator, replicates: int) -> NDArray[np.intp]:
         """(replicates, J) how often each member is drawn."""
-        redrawn, shape = len(self.order), (replicates, len(self.sizes))
-        places = chance.integers(0, 2**32, shape, dtype=np.uint32).astype(np.uint64)
-        places *= self.sizes  # a 32-bit fraction of the size of the group
+        redrawn, draws = len(self.order), len(self.sizes)
+        raw = chance.integers(0, 2**64, (replicates * draws + 1) // 2, dtype=np.uint64)
+        fractions = raw.view(np.uint32)[: replicates * draws].reshape(replicates, draws)
+        places = np.multiply(fractions, self.sizes, dtype=np.uint64)  # in units of 2**-32
         places >>= _BITS
         places += self.starts
         places += (np.arange(replicates, dtype=np.uint64) * np.uint64(redrawn))[:, None]

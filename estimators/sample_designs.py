@@ -22,6 +22,7 @@ from estimators.design_parts import (
 )
 from estimators.results import Caution
 from estimators.sampling_stages import SamplingStages, stages_of_rows
+from estimators.systematic_stages import systematic_stages
 from estimators.weighted_stages import universe_of_weights, weighted_stages
 
 
@@ -195,6 +196,30 @@ class SampleDesign:
             stratum, sizes = invited(n, strata, population_sizes, population_size)
             base = cls.stratified(stratum, population_sizes=sizes)
         return replace(base, cautions=(caution.ATTEMPTED_CENSUS,))
+
+    @classmethod
+    def systematic(cls, order: ArrayLike, *, population_size: int) -> SampleDesign:
+        """Describe every so-many-th unit of an ordered list.
+
+        Parameters
+        ----------
+        order : (n,) float
+            Place of each row in the list; only which comes first matters.
+        population_size : int
+            Units on the list.
+
+        Raises
+        ------
+        InputError
+            If a place is missing or taken twice, or the list is shorter than the sample.
+
+        References
+        ----------
+        Wolter, K. M. (2007). Introduction to Variance Estimation, 2nd ed., section 8.2.
+        """
+        base = cls.simple_random(np.size(order), population_size=population_size)
+        stages = systematic_stages(order, as_count(population_size, "population_size"))
+        return replace(base, stages=stages, cautions=(caution.SYSTEMATIC_SAMPLE,))
 
     @classmethod
     def clustered(

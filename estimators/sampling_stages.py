@@ -39,7 +39,7 @@ class SamplingStages:
     response_group : (n,) int
         Group within which not answering is a matter of chance: the stratum, or the cluster.
     stratum_names : tuple of str
-        Label of each stratum, for cautions.
+        Label of each stratum, for cautions; empty where no stratum is the caller's own.
     """
 
     stratum: Codes

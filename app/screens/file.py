@@ -6,7 +6,7 @@ from app.intake import FieldworkFileError
 from app.store import StoreError
 from app.study.number_format import write_count
 from app.widgets import address, file_reading, layout
-from app.widgets.cached_work import database, read_file
+from app.widgets.cached_work import database, read_file, remember
 from app.widgets.deliveries import deliver
 from app.widgets.file_list import show_files
 from app.widgets.first_figure import show_first_figure
@@ -24,6 +24,7 @@ def show_drop(study_id: str, label: str) -> None:
     except (FieldworkFileError, StoreError) as error:
         layout.problem(str(error))
         return
+    remember(delivery.file, delivery.read)
     st.session_state["upload_round"] = round_number + 1
     if delivery.changes:
         layout.later(" ".join(delivery.changes))

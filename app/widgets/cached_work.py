@@ -47,8 +47,17 @@ def read_file(file: StudyFile) -> FieldworkFile:
     return _read(file.fingerprint, file.file_name, file.reading)
 
 
+def remember(file: StudyFile, read: FieldworkFile) -> None:
+    """Keep a file just read and stored, so that it is not read again for its first screen."""
+    _read(file.fingerprint, file.file_name, file.reading, read)
+
+
 @st.cache_resource(max_entries=6, show_spinner="Reading the file")
-def _read(fingerprint: str, file_name: str, reading: str) -> FieldworkFile:
+def _read(
+    fingerprint: str, file_name: str, reading: str, _fresh: FieldworkFile | None = None
+) -> FieldworkFile:
+    if _fresh is not None:
+        return _fresh
     data = database().file_bytes(fingerprint)
     return read_fieldwork_file(data, file_name=file_name, reading=Reading.from_json(reading))
 

@@ -15,7 +15,7 @@ from app.study.study import StudyFile
 from app.study.study_changes import carry_over
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, eq=False)
 class Delivery:
     """What came of a file.
 
@@ -25,10 +25,16 @@ class Delivery:
         The study it belongs to now.
     changes : tuple of str
         What a second file changed, one sentence each; empty for a first one.
+    file : StudyFile
+        As kept.
+    read : FieldworkFile
+        As read.
     """
 
     study_id: str
     changes: tuple[str, ...]
+    file: StudyFile
+    read: FieldworkFile
 
 
 def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> Delivery:
@@ -55,7 +61,7 @@ def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> D
     study = study_id or database.create_study(_name_from(name)).id
     try:
         questions, changes = _taken_over(database, study, read)
-        database.add_file(
+        file = database.add_file(
             study,
             data,
             file_name=name,
@@ -69,7 +75,7 @@ def deliver(database: Database, study_id: str, data: bytes, file_name: str) -> D
             with suppress(StoreError):
                 database.delete_study(study)
         raise
-    return Delivery(study, changes)
+    return Delivery(study, changes, file, read)
 
 
 def _as_before(database: Database, study_id: str) -> Reading | None:
@@ -90,8 +96,8 @@ def use_again(database: Database, file: StudyFile) -> Delivery:
     reading = Reading.from_json(file.reading)
     read = read_fieldwork_file(data, file_name=file.file_name, reading=reading)
     questions, changes = _taken_over(database, file.study_id, read)
-    database.make_current(file.id, questions=questions)
-    return Delivery(file.study_id, changes)
+    current = database.make_current(file.id, questions=questions)
+    return Delivery(file.study_id, changes, current, read)
 
 
 def _taken_over(

@@ -31,6 +31,9 @@ class Sizes:
     repeats: int = 200
     figures: int = 40
     requests: int = 100
+    large_rows: int = 65_000
+    table_rows: int = 1_000_000
+    table_pairs: int = 200
     runs: int = 5
     servers: bool = True
 
@@ -39,9 +42,12 @@ def measure(sizes: Sizes) -> Iterator[Result]:
     """Measure one thing after the other."""
     data = fieldwork_file(sizes.rows, sizes.columns)
     yield computing.reading(data, sizes.runs)
+    large = fieldwork_file(sizes.large_rows, sizes.columns)
+    yield computing.reading(large, sizes.runs, limit=2.5)
     yield computing.first_figure(data, sizes.runs)
     yield computing.exact_distribution(sizes.universe, sizes.sample, sizes.repeats, sizes.runs)
     yield computing.one_mean(sizes.rows, sizes.runs)
+    yield computing.tables(sizes.table_rows, sizes.table_pairs, sizes.runs)
     yield readout_pages.rendering(sizes.figures, sizes.runs)
     if not sizes.servers:
         return

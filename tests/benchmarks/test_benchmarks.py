@@ -17,6 +17,9 @@ TINY = Sizes(
     columns=12,
     universe=60,
     sample=10,
+    large_rows=200,
+    table_rows=500,
+    table_pairs=10,
     repeats=3,
     figures=3,
     requests=2,
@@ -46,9 +49,11 @@ def test_everything_that_needs_no_server_is_measured(tiny):
     names = [record["name"] for record in written["results"]]
     assert names == [
         "read_fieldwork_file",
+        "read_fieldwork_file",
         "first figure",
         "exact distribution",
         "mean()",
+        "tabulate",
         "readout page, written",
     ]
 
