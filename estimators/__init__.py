@@ -17,6 +17,13 @@ from estimators.p_value_adjustment import adjust_p_values
 from estimators.proportion_intervals import proportion_interval
 from estimators.proportions import proportion
 from estimators.quantiles import quantile
+from estimators.replicate_variance import (
+    replicate_distribution,
+    replicate_estimates,
+    replicate_sums,
+    replicate_variance,
+)
+from estimators.replicate_weights import ReplicateWeights, replicate_weights
 from estimators.results import Caution, Difference, Estimate, Interval
 from estimators.sample_designs import SampleDesign
 from estimators.sampling_distributions import (
@@ -49,6 +56,7 @@ __all__ = [
     "InputError",
     "Interval",
     "MeanTable",
+    "ReplicateWeights",
     "SampleDesign",
     "SamplingDistribution",
     "ShareTable",
@@ -69,6 +77,11 @@ __all__ = [
     "proportion_interval",
     "quantile",
     "ratio",
+    "replicate_distribution",
+    "replicate_estimates",
+    "replicate_sums",
+    "replicate_variance",
+    "replicate_weights",
     "sample_skewness",
     "share_table",
     "simulation_error",

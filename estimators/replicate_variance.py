@@ -55,7 +55,9 @@ def replicate_sums(values: ArrayLike, replicates: ReplicateWeights) -> Floats:
     plain = inside is None and len(numbers) == replicates.base.design.n
     if not (plain and np.isfinite(numbers).all()):
         n = replicates.base.design.n
-        checked = [numbers_of_base(c, f"values[:, {k}]", n, inside) for k, c in enumerate(columns.T)]
+        checked = [
+            numbers_of_base(c, f"values[:, {k}]", n, inside) for k, c in enumerate(columns.T)
+        ]
         numbers = np.stack(checked, axis=1)
     return _summed(numbers * replicates.weights[:, None], replicates)
 
@@ -189,7 +191,7 @@ def _summed(weighted: Floats, replicates: ReplicateWeights) -> Floats:
     for changes in replicates.changes():
         np.matmul(changes, columns, out=found[start : start + len(changes)])
         start += len(changes)
-    return found + weighted.sum(axis=0)
+    return np.asarray(found + weighted.sum(axis=0), dtype=np.float64)
 
 
 def _ratios(values: ArrayLike, denominator: ArrayLike, replicates: ReplicateWeights) -> Floats:
@@ -200,7 +202,9 @@ def _ratios(values: ArrayLike, denominator: ArrayLike, replicates: ReplicateWeig
     value = ratio(numbers, below, base.design, where=base.where, answered=base.inside).value
     if math.isnan(value):
         raise InputError("denominator", "a sum of zero", "must not add up to zero", "check it")
-    sums = _summed(base.weights[:, None] * np.stack([numbers - value * below, below], 1), replicates)
+    sums = _summed(
+        base.weights[:, None] * np.stack([numbers - value * below, below], 1), replicates
+    )
     return value + sums[:, 0] / sums[:, 1] * math.sqrt(base.counts.subgroup_factor)
 
 

@@ -178,7 +178,9 @@ def replicate_weights(
     if second.any():
         kept = np.ones(design.n, bool) if counts.kept is None else counts.kept
         unseen = 2 - counts.fractions[stages.unit_stratum]
-        rows = resampling(stages.row_units, kept, second / unseen if method == "bootstrap" else second)
+        rows = resampling(
+            stages.row_units, kept, second / unseen if method == "bootstrap" else second
+        )
     units = resampling(stages.unit_stratum, _present(base), 1 - counts.fractions)
     scales = (
         np.full(how_many, 1 / how_many) if method == "bootstrap" else _scales_left_out(base, second)

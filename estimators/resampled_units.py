@@ -148,6 +148,7 @@ def deletions(group: Codes, present: NDArray[np.bool_], members: Codes) -> Float
     """
     counts = np.bincount(group[present], minlength=int(group.max()) + 1)
     sizes = counts[group[members]]
-    changes = ((group == group[members][:, None]) & present) / np.maximum(sizes - 1, 1)[:, None]
+    others = (group == group[members][:, None]) & present
+    changes: Floats = others / np.maximum(sizes - 1.0, 1.0)[:, None]
     changes[np.arange(len(members)), members] = np.where(sizes > 1, -1.0, 1.0)
     return changes

@@ -1,4 +1,4 @@
-"""Every so-many-th unit of an ordered list: neighbours of the list tell how far a figure may be off.
+"""Every so-many-th unit of an ordered list: neighbours tell how far a figure may be off.
 
 One systematic sample holds a single random start, so no variance can be estimated without a model.
 Here units that follow each other are compared, two by two, as if each pair had been drawn at
@@ -40,7 +40,8 @@ def systematic_stages(order: ArrayLike, population_size: int) -> SamplingStages:
     places = _places(order)
     n = len(places)
     pair = np.minimum(places // 2, max(n // 2 - 1, 0))  # an odd one joins the last pair
-    stages = stages_of_rows(pair, np.bincount(pair) * (population_size / n), ())
+    there = np.bincount(pair).astype(np.float64) * (population_size / n)
+    stages = stages_of_rows(pair, there, ())
     # Who answers is a matter of chance over the whole list, not within two neighbours.
     return replace(stages, response_group=frozen(np.zeros(n, np.intp)))
 

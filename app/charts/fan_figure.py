@@ -37,6 +37,7 @@ _HIDDEN = {
 }
 _TITLE_WIDTH = 27  # the bundled font is narrow
 Strokes = list[tuple[float, float]]
+FanFigure = go.Figure  # its name for shelves where plotly is not at home
 
 
 @dataclass(slots=True)

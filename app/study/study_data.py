@@ -33,6 +33,8 @@ class StudyData:
         Rows in the file.
     built : BuiltDesign
         The design of these rows, and what contradicts it.
+    name : str
+        Names all of the above but the study completely; "" where nobody keeps results by it.
     """
 
     study: Study
@@ -41,6 +43,7 @@ class StudyData:
     answers: pd.DataFrame
     received: int
     built: BuiltDesign
+    name: str = ""
 
     @property
     def set_aside(self) -> int:

@@ -11,12 +11,17 @@ from pathlib import Path
 
 import streamlit as st
 
+from app.charts.fan_figure import FanFigure, fan_figure
+from app.charts.palette import DARK, LIGHT
 from app.intake import FieldworkFile, Reading, read_fieldwork_file
 from app.sharing.readout_page import render_page
 from app.store import Database, StoredPlan, StoredQuestion, open_database
+from app.study.figure_requests import FigureRequest
+from app.study.figure_work import FigureWork, work_out
 from app.study.frozen import FrozenReadout
+from app.study.pictures import Fan
 from app.study.questions import Question
-from app.study.records import from_json
+from app.study.records import from_json, to_json
 from app.study.sampling_plan import SamplingPlan
 from app.study.study import Study, StudyFile
 from app.study.study_data import StudyData, prepare_study
@@ -78,7 +83,7 @@ def study_data(
 
 @st.cache_resource(max_entries=8, show_spinner="Preparing the study")
 def _prepare(
-    name: str,  # noqa: ARG001 - names the questions and the plan, which are not hashed
+    name: str,
     fingerprint: str,
     file_name: str,
     reading: str,
@@ -87,7 +92,36 @@ def _prepare(
     _plan: SamplingPlan,
 ) -> StudyData:
     read = _read(fingerprint, file_name, reading)
-    return prepare_study(replace(_NOBODY, decimal_mark=mark), _questions, _plan, read.answers)
+    data = prepare_study(replace(_NOBODY, decimal_mark=mark), _questions, _plan, read.answers)
+    return replace(data, name=f"{name} {fingerprint} {reading}")
+
+
+def figure_work(data: StudyData, request: FigureRequest, split: str) -> FigureWork:
+    """Return a figure and the rows beside it; the same question again costs nothing."""
+    house = to_json((data.study.decimal_mark, data.study.limit))
+    return _worked_out(data.name, house, to_json(request), split, data, request)
+
+
+@st.cache_resource(max_entries=24, show_spinner=False)
+def _worked_out(
+    name: str,  # noqa: ARG001 - names the study's rows, questions and plan
+    house: str,  # noqa: ARG001 - language of numbers and width limit
+    asked: str,  # noqa: ARG001 - the request in words
+    split: str,
+    _data: StudyData,
+    _request: FigureRequest,
+) -> FigureWork:
+    return work_out(_data, _request, split)
+
+
+def fan_picture(fan: Fan, *, dark: bool, show_endless: bool) -> FanFigure:
+    """Return the drawn fan; it is shared and must not be changed."""
+    return _drawn(to_json(fan), dark, show_endless, fan)
+
+
+@st.cache_resource(max_entries=24, show_spinner=False)
+def _drawn(name: str, dark: bool, show_endless: bool, _fan: Fan) -> FanFigure:  # noqa: ARG001
+    return fan_figure(_fan, DARK if dark else LIGHT, show_endless=show_endless)
 
 
 @st.cache_data(max_entries=64, show_spinner=False)

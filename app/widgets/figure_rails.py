@@ -7,13 +7,8 @@ import streamlit as st
 from app.charts.rail_svg import rail_html
 from app.charts.verdict_glyphs import glyph_html
 from app.study.figure_requests import FigureRequest, Statistic
-from app.study.figure_rows import (
-    FigureRow,
-    answer_requests,
-    figure_rows,
-    group_requests,
-    groupings,
-)
+from app.study.figure_rows import FigureRow, groupings
+from app.study.figure_work import ANSWERS
 from app.study.questions import Question
 from app.study.study_data import StudyData
 from app.study.width_check import Outcome
@@ -21,25 +16,11 @@ from app.widgets import address
 from app.widgets.figure_address import to_address
 from app.widgets.plain_text import as_html, as_typed, shortened
 
-ANSWERS = "answers"
 
-
-def rows_beside(
-    data: StudyData, request: FigureRequest, question: Question
-) -> tuple[FigureRow, ...]:
-    """Return the rows beside a figure, as the address wants them."""
+def split_in_address(data: StudyData, request: FigureRequest, question: Question) -> str:
+    """Return what the rows beside a figure show, as the address wants it."""
     named, options = address.read("by"), _splits(data, request, question)
-    split = named if named in options else default_split(data, request, question)
-    if split == ANSWERS:
-        return figure_rows(data, answer_requests(question, request), by_answer=True)
-    grouping = data.question(split)
-    return figure_rows(data, group_requests(grouping, request)) if grouping else ()
-
-
-def step_among(rows: tuple[FigureRow, ...], request: FigureRequest) -> float | None:
-    """Return the step of the rows where the figure stands among them, so that both are alike."""
-    row = next((row for row in rows if _same(row.request, request)), None)
-    return row.words.step if row is not None and row.words is not None else None
+    return named if named in options else default_split(data, request, question)
 
 
 def show_rails(

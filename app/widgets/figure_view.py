@@ -4,18 +4,18 @@ from __future__ import annotations
 
 import streamlit as st
 
-from app.charts.fan_figure import fan_config, fan_figure
-from app.charts.palette import DARK, LIGHT
+from app.charts.fan_figure import fan_config
 from app.charts.verdict_glyphs import verdict_html
-from app.study.fans import fan_of
 from app.study.figure_rows import FigureRow
 from app.study.figure_steps import Step, method_name, method_words
+from app.study.figure_work import ShownFigure
 from app.study.figures import Figure
 from app.study.number_format import NO_BREAK, write_count
-from app.study.sentences import FigureText, endless_words, value_words
+from app.study.sentences import endless_words, value_words
 from app.study.study_data import StudyData
 from app.study.width_check import limit_words
 from app.widgets import address
+from app.widgets.cached_work import fan_picture
 from app.widgets.figure_address import LEVELS, SHARE_METHODS
 from app.widgets.plain_text import as_html
 
@@ -27,11 +27,10 @@ _METHOD_WORDS = {
 }
 
 
-def show_number(data: StudyData, figure: Figure, text: FigureText) -> None:
+def show_number(data: StudyData, shown: ShownFigure) -> None:
     """Show the number, its sentence and its verdict."""
-    mark = data.study.decimal_mark
-    value = value_words(figure, text.words, mark)
-    verdict = figure.verdict
+    figure, text, verdict = shown.figure, shown.text, shown.figure.verdict
+    value = value_words(figure, text.words, data.study.decimal_mark)
     word = f"{verdict.outcome.value} ({verdict.reason})"
     st.html(
         f'<p class="hr-soft hw-question">{as_html(figure.question.text)}</p>'
@@ -43,12 +42,12 @@ def show_number(data: StudyData, figure: Figure, text: FigureText) -> None:
     )
 
 
-def show_fan(data: StudyData, figure: Figure, text: FigureText, step: float | None = None) -> None:
-    """Show the fan with the lines under it, rounded to the step of the rows beside it."""
-    fan = fan_of(data, figure, step=step)
+def show_fan(shown: ShownFigure) -> None:
+    """Show the fan with the lines under it."""
+    figure, text, fan = shown.figure, shown.text, shown.fan
     dark = st.context.theme.type == "dark"
     st.plotly_chart(
-        fan_figure(fan, DARK if dark else LIGHT, show_endless=address.read("endless") == "1"),
+        fan_picture(fan, dark=dark, show_endless=address.read("endless") == "1"),
         theme=None,
         width="stretch",
         config=fan_config(),
@@ -59,9 +58,11 @@ def show_fan(data: StudyData, figure: Figure, text: FigureText, step: float | No
         part for part in (text.base_line, text.counts_like, level_words(figure)) if part
     )
     notes = "".join(f'<p class="hr-soft hr-small">{as_html(note)}</p>' for note in fan.notes)
-    st.html(f'<p class="hr-soft" data-figure="base">{as_html(line)}</p>{notes}')
-    for caution in figure.estimate.cautions:
-        st.html(f'<p class="hr-soft hr-small">{as_html(caution.sentence)}</p>')
+    cautions = "".join(
+        f'<p class="hr-soft hr-small">{as_html(caution.sentence)}</p>'
+        for caution in figure.estimate.cautions
+    )
+    st.html(f'<p class="hr-soft" data-figure="base">{as_html(line)}</p>{notes}{cautions}')
 
 
 def level_words(figure: Figure) -> str:

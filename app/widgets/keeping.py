@@ -9,11 +9,12 @@ import streamlit as st
 from app.store import Database
 from app.study.figure_requests import FigureRequest
 from app.study.figure_rows import groupings
+from app.study.figure_work import ANSWERS
 from app.study.sentences import FigureText
 from app.study.study import KeptFigure, Study
 from app.study.study_data import StudyData
 from app.widgets import address, layout
-from app.widgets.figure_rails import ANSWERS, default_split
+from app.widgets.figure_rails import default_split
 
 
 def show_keep(
