@@ -7,7 +7,7 @@ from collections.abc import Callable
 from typing import Literal, get_args
 
 import numpy as np
-from numpy.typing import ArrayLike
+from numpy.typing import ArrayLike, NDArray
 
 from estimators.array_checks import Floats, numbers_of_base
 from estimators.errors import InputError
@@ -59,7 +59,7 @@ def replicate_sums(values: ArrayLike, replicates: ReplicateWeights) -> Floats:
             numbers_of_base(c, f"values[:, {k}]", n, inside) for k, c in enumerate(columns.T)
         ]
         numbers = np.stack(checked, axis=1)
-    return _summed(numbers * replicates.weights[:, None], replicates)
+    return _summed(numbers, replicates.weights, replicates)
 
 
 def replicate_estimates(
@@ -177,21 +177,32 @@ def replicate_distribution(
     return _distribution(_ratios(values, below, replicates))
 
 
-def _summed(weighted: Floats, replicates: ReplicateWeights) -> Floats:
-    """(R, k) sums of the columns, changed as each replicate says."""
-    stages = replicates.base.design.stages
-    columns = weighted
-    if stages.unit is not None and replicates.rows is None:
-        units = len(stages.unit_stratum)
-        columns = np.stack([sums_by(stages.unit, column, units) for column in weighted.T], axis=1)
-    if replicates.method == "bootstrap":
-        columns = columns.astype(np.float32)
-    found = np.empty((replicates.replicates, weighted.shape[1]), columns.dtype)
+def _summed(numbers: Floats, weights: Floats, replicates: ReplicateWeights) -> Floats:
+    """(R, k) sums of the (n, k) numbers times weights, changed as each replicate says."""
+    kind = np.float32 if replicates.method == "bootstrap" else np.float64
+    columns = _weighted(numbers, weights, replicates, kind)
+    found = np.empty((replicates.replicates, columns.shape[1]), kind)
     start = 0
     for changes in replicates.changes():
         np.matmul(changes, columns, out=found[start : start + len(changes)])
         start += len(changes)
-    return np.asarray(found + weighted.sum(axis=0), dtype=np.float64)
+    return np.asarray(found + weights @ numbers, dtype=np.float64)
+
+
+def _weighted(
+    numbers: Floats,
+    weights: Floats,
+    replicates: ReplicateWeights,
+    kind: type[np.float32] | type[np.float64],
+) -> NDArray[np.floating]:
+    """(K, k) numbers times weights, summed by unit where only units are redrawn."""
+    stages = replicates.base.design.stages
+    columns = np.empty(numbers.shape, kind)
+    if stages.unit is None or replicates.rows is not None:
+        return np.multiply(numbers, weights[:, None], out=columns, casting="unsafe")
+    units = len(stages.unit_stratum)
+    sums = [sums_by(stages.unit, weights * column, units) for column in numbers.T]
+    return np.stack(sums, axis=1).astype(kind)
 
 
 def _ratios(values: ArrayLike, denominator: ArrayLike, replicates: ReplicateWeights) -> Floats:
@@ -202,9 +213,7 @@ def _ratios(values: ArrayLike, denominator: ArrayLike, replicates: ReplicateWeig
     value = ratio(numbers, below, base.design, where=base.where, answered=base.inside).value
     if math.isnan(value):
         raise InputError("denominator", "a sum of zero", "must not add up to zero", "check it")
-    sums = _summed(
-        base.weights[:, None] * np.stack([numbers - value * below, below], 1), replicates
-    )
+    sums = _summed(np.stack([numbers - value * below, below], 1), base.weights, replicates)
     return value + sums[:, 0] / sums[:, 1] * math.sqrt(base.counts.subgroup_factor)
 
 
@@ -214,9 +223,9 @@ def _totals(values: ArrayLike, replicates: ReplicateWeights) -> Floats:
     numbers = numbers_of_base(values, "values", base.design.n, base.inside)
     total(numbers, base.design, where=base.where, answered=base.inside)  # refuses what it refuses
     if not base.design.scaled_weights:
-        return _summed((base.weights * numbers)[:, None], replicates)[:, 0]
-    columns = np.stack([base.weights * numbers, base.row_weights], axis=1)
-    sums = _summed(columns, replicates)
+        return _summed(numbers[:, None], base.weights, replicates)[:, 0]
+    of_base = np.where(base.weights > 0, numbers, 0.0)
+    sums = _summed(np.stack([of_base, np.ones_like(numbers)], 1), base.row_weights, replicates)
     return sums[:, 0] / sums[:, 1] * float(base.row_weights.sum())
 
 

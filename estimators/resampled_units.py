@@ -11,6 +11,7 @@ Wolter, K. M. (2007). Introduction to Variance Estimation, 2nd ed., chapter 4 (j
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -22,6 +23,9 @@ Changes = NDArray[np.float32]
 
 _BITS = np.uint64(32)
 _PIECE = 2**17  # factors made at a time, few enough for the cache of a processor
+_KINDS = 2**16
+_LARGE = 400  # members of a group from which Poisson counts save time
+_SELDOM = 4  # standard deviations
 _LEAST = 0.5  # a unit without another in its stratum never counts less than this part of itself
 
 
@@ -44,6 +48,8 @@ class Resampling:
         In the same order, how much one more draw adds.
     drops : (J,) float32
         In the same order, what a member loses that is not drawn.
+    rarities : (65536,) float32 or None
+        Where all groups are large: Poisson counts, each as often as it is likely.
     """
 
     group: Codes
@@ -53,6 +59,7 @@ class Resampling:
     sizes: NDArray[np.uint64]
     stretches: Changes
     drops: Changes
+    rarities: Changes | None
 
     def changes(self, chance: np.random.Generator, replicates: int) -> Changes:
         """(replicates, K) factors minus 1: mean 0, and the variance of a sum they give is right."""
@@ -63,14 +70,16 @@ class Resampling:
         step = max(1, _PIECE // members)
         for start in range(0, replicates if redrawn else 0, step):
             piece = min(step, replicates - start)
-            found = self._counts(chance, piece).astype(np.float32)
+            found = self._counts(chance, piece)
             found *= self.stretches
             found -= self.drops
             changes[start : start + piece, place] = found
         return changes
 
-    def _counts(self, chance: np.random.Generator, replicates: int) -> NDArray[np.intp]:
+    def _counts(self, chance: np.random.Generator, replicates: int) -> Changes:
         """(replicates, J) how often each member is drawn."""
+        if self.rarities is not None:
+            return self._counts_of_large(chance, replicates, self.rarities)
         redrawn, draws = len(self.order), len(self.sizes)
         raw = chance.integers(0, 2**64, (replicates * draws + 1) // 2, dtype=np.uint64)
         fractions = raw.view(np.uint32)[: replicates * draws].reshape(replicates, draws)
@@ -79,7 +88,31 @@ class Resampling:
         places += self.starts
         places += (np.arange(replicates, dtype=np.uint64) * np.uint64(redrawn))[:, None]
         drawn = np.bincount(places.view(np.int64).ravel(), minlength=replicates * redrawn)
-        return drawn.reshape(replicates, redrawn)
+        return drawn.reshape(replicates, redrawn).astype(np.float32)
+
+    def _counts_of_large(
+        self, chance: np.random.Generator, replicates: int, rarities: Changes
+    ) -> Changes:
+        """Do the same in a third of the time: independent Poisson counts, then the draws they lack.
+
+        Given their sum, independent Poisson counts are plain draws, and so are the draws added.
+        """
+        shape = (replicates, len(self.order))
+        raw = chance.integers(0, 2**64, shape[0] * shape[1] // 4 + 1, dtype=np.uint64)
+        counts = rarities.take(raw.view(np.uint16)[: shape[0] * shape[1]].reshape(shape))
+        starts, where, wanted = np.unique(self.starts, return_index=True, return_counts=True)
+        starts = starts.astype(np.intp)
+        lacks = wanted - np.add.reduceat(counts, starts, axis=1).astype(np.intp)
+        ends = np.append(starts[1:], shape[1])
+        for row, group in np.argwhere(lacks < 0):  # too many: this group is drawn afresh
+            counts[row, starts[group] : ends[group]] = 0
+            lacks[row, group] = wanted[group]
+        offsets = np.arange(replicates)[:, None] * shape[1] + starts
+        sizes = np.broadcast_to(self.sizes[where].astype(np.float64), lacks.shape)
+        fractions = chance.random(int(lacks.sum()))
+        places = (fractions * np.repeat(sizes, lacks.ravel())).astype(np.intp)
+        np.add.at(counts.reshape(-1), places + np.repeat(offsets, lacks.ravel()), np.float32(1))
+        return counts
 
 
 def resampling(group: Codes, present: NDArray[np.bool_], parts: Floats) -> Resampling:
@@ -111,7 +144,18 @@ def resampling(group: Codes, present: NDArray[np.bool_], parts: Floats) -> Resam
         sizes=np.repeat(redrawn, draws).astype(np.uint64),
         stretches=(reach * ratio)[group[order]].astype(np.float32),
         drops=reach[group[order]].astype(np.float32),
+        rarities=_rarities(int(redrawn[redrawn > 0].min(initial=np.iinfo(np.int64).max))),
     )
+
+
+def _rarities(smallest: int) -> Changes | None:
+    """Poisson counts by likelihood, with a mean that seldom gives more draws than wanted."""
+    if not _LARGE <= smallest < np.iinfo(np.int64).max:
+        return None
+    mean = 1 - 1 / smallest - _SELDOM / math.sqrt(smallest)
+    likely = np.cumsum([math.exp(-mean) * mean**k / math.factorial(k) for k in range(16)])
+    ranks = (np.arange(_KINDS) + 0.5) / _KINDS
+    return np.searchsorted(likely, ranks).astype(np.float32)
 
 
 def single_changes(

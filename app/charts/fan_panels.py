@@ -9,7 +9,7 @@ from app.study.pictures import Fan
 
 LABEL_WIDTH = 14  # characters of a bar's label or a tick before it is broken
 TITLE_WIDTH = 24  # characters above a panel at 390 pixels
-BAR_ROOM = 1.5  # the left panel is this much wider than the longest bar: its number stands there
+BAR_ROOM = 1.8  # the left panel is this much wider than the longest bar: its number stands there
 NUMBER_ROOM = 0.33  # share of the left panel that a bar's number takes at 390 pixels
 CURVE_REACH = 0.9  # the longest point of the curve, as a share of the right panel
 TEXT_GAP = 0.05  # of the panel's height: 12 pixels of 240

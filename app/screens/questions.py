@@ -22,7 +22,8 @@ with left:
     shown = show_filter(questions)
 keys = [q.key for q in questions]
 named = address.read("q")
-first = next(iter(shown), questions[0] if questions else None)
+opening = [q for q in shown if q.needs_you or q.usable] or list(shown) or list(questions)
+first = next(iter(opening), None)
 chosen = named if named in keys else (first.key if first else "")
 with right, st.container(key="question_card"):
     if named and named not in keys:

@@ -80,18 +80,19 @@ def test_all_draws_of_both_stages_together_give_the_variance_of_the_design(monke
     assert np.mean(squares) == pytest.approx(variance_of_total(values, design), rel=1e-6)
 
 
-@pytest.mark.parametrize("name", ["stratified", "two stages", "systematic"])
-def test_means_of_those_who_answered_are_as_uncertain_as_told(name):
-    """Not an identity: the estimator splits the variance of drawing and answering, this does not."""
+@pytest.mark.parametrize(
+    ("name", "apart"), [("stratified", 1e-9), ("two stages", 1e-9), ("systematic", 0.03)]
+)
+def test_means_of_those_who_answered_are_as_uncertain_as_told(name, apart):
+    """Drawing and answering are one draw here; neighbours of a list lose each other by it."""
     design = DESIGNS[name]
     values, gave = answers(design), np.random.default_rng(2).random(design.n) < 0.8
     expected = mean(values, design, answered=gave)
     replicates = replicate_weights(design, answered=gave, method="jackknife")
-    found = all_weights(replicates)
-    means = found @ np.where(gave, values, np.nan_to_num(np.nan)) / found.sum(axis=1)
+    weights = all_weights(replicates)
+    means = weights @ values / weights.sum(axis=1)
     error = replicate_variance(means, expected.value, replicates) ** 0.5
-    print(name, error, expected.standard_error)
-    assert error == pytest.approx(expected.standard_error, rel=0.15)
+    assert error == pytest.approx(expected.standard_error, rel=apart)
 
 
 def test_a_census_does_not_vary():
