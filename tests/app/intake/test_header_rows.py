@@ -89,7 +89,7 @@ def test_counting_numbers_may_name_columns():
 
 @pytest.mark.parametrize(
     "above",
-    ["Dealer study, autumn\n\n", "Dealer study,,\n,,\n", "\n\n", "Dealer study\nField: March\n"],
+    ["Dealer study, autumn\n\n", "Dealer study,,\n,,\n", "\n\n", "Dealer study\nMarch only\n"],
 )
 def test_titles_above_the_table_are_skipped(above):
     file = read(above + CODES + ROWS)
