@@ -64,16 +64,17 @@ class Resampling:
     def changes(self, chance: np.random.Generator, replicates: int) -> Changes:
         """(replicates, K) factors minus 1: mean 0, and the variance of a sum they give is right."""
         members, redrawn = len(self.group), len(self.order)
-        in_place = redrawn == members and bool((self.order == np.arange(members)).all())
-        place = slice(None) if in_place else self.order
-        changes = np.zeros((replicates, members), np.float32)
+        in_place = 0 < redrawn == members and bool((self.order == np.arange(members)).all())
+        changes = (np.empty if in_place else np.zeros)((replicates, members), np.float32)
         step = max(1, _PIECE // members)
         for start in range(0, replicates if redrawn else 0, step):
-            piece = min(step, replicates - start)
-            found = self._counts(chance, piece)
-            found *= self.stretches
-            found -= self.drops
-            changes[start : start + piece, place] = found
+            piece = changes[start : start + step]
+            found = self._counts(chance, len(piece))
+            np.multiply(found, self.stretches, out=piece if in_place else found)
+            if in_place:
+                piece -= self.drops
+            else:
+                piece[:, self.order] = found - self.drops
         return changes
 
     def _counts(self, chance: np.random.Generator, replicates: int) -> Changes:

@@ -7,7 +7,13 @@ from app.widgets import address, layout
 from app.widgets.cached_work import database, read_file
 from app.widgets.question_card import show_question
 from app.widgets.question_form import show_form
-from app.widgets.question_list import show_accept_all, show_counts, show_filter, show_list
+from app.widgets.question_list import (
+    show_accept_all,
+    show_counts,
+    show_filter,
+    show_list,
+    show_way_to_all,
+)
 
 layout.dress()
 opened = layout.open_study()
@@ -48,4 +54,5 @@ with right, st.container(key="question_card"):
         st.page_link("screens/plan.py", label="On to the sampling plan", query_params=query)
 with left:
     show_list(shown, chosen)
+    show_way_to_all(questions, shown)
     show_accept_all(database(), opened.study.id)

@@ -91,6 +91,12 @@ def show_list(questions: tuple[Question, ...], chosen: str) -> None:
     _show_pages(page, -(-len(questions) // PAGE))
 
 
+def show_way_to_all(questions: tuple[Question, ...], shown: tuple[Question, ...]) -> None:
+    """Offer all questions in one click where only some are shown."""
+    if len(shown) < len(questions):
+        address.link("All questions", "all_questions", show=ALL, find="", page="")
+
+
 def _page_of(questions: tuple[Question, ...], chosen: str) -> int:
     last = (len(questions) - 1) // PAGE
     named = address.read("page")

@@ -254,3 +254,12 @@ def test_all_set_aside(store):
         window = Window(screen, study=study)
         assert len(window.problems) == (screen == "figure")
     assert "8 set aside" in Window("questions", study=study).text
+
+
+def test_all_questions_are_one_click_away(store, fresh):
+    window = Window("questions", study=fresh)
+    window.press("all_questions")
+    shown = [key for key in window.buttons() if key.startswith("to_question_")]
+    assert len(shown) == min(20, len(store.questions(fresh)))
+    assert "page 1 of 2" in window.text
+    assert "all_questions" not in window.buttons()
