@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from concurrent.futures import ThreadPoolExecutor
 from typing import Literal, get_args
 
 import numpy as np
@@ -13,7 +14,7 @@ from estimators.array_checks import Floats, numbers_of_base
 from estimators.errors import InputError
 from estimators.means_and_totals import ratio, total
 from estimators.quantiles import quantile
-from estimators.replicate_weights import ReplicateWeights
+from estimators.replicate_weights import Changes, ReplicateWeights
 from estimators.sampling_distributions import SamplingDistribution
 from estimators.sampling_stages import sums_by
 
@@ -72,19 +73,31 @@ def replicate_estimates(
     statistic : callable
         From (n,) weights to a number or an array.
     replicates : ReplicateWeights
-        Of the n rows; at least one replicate.
+        Of the n rows.
 
     Returns
     -------
     (R, ...) float
         The statistic for each replicate.
+
+    Raises
+    ------
+    InputError
+        If there is no replicate, because nothing of a census can be left out.
     """
+    if replicates.replicates == 0:
+        raise InputError(
+            "replicates",
+            "none, as in a census",
+            "must hold at least one",
+            "take the variance to be zero",
+        )
     found = [
         np.asarray(statistic(weights), dtype=np.float64)
         for block in replicates.blocks()
         for weights in block
     ]
-    return np.stack(found) if found else np.empty(0)
+    return np.stack(found)
 
 
 def replicate_variance(
@@ -183,10 +196,19 @@ def _summed(numbers: Floats, weights: Floats, replicates: ReplicateWeights) -> F
     columns = _weighted(numbers, weights, replicates, kind)
     found = np.empty((replicates.replicates, columns.shape[1]), kind)
     start = 0
-    for changes in replicates.changes():
+    for changes in _one_ahead(replicates.changes()):
         np.matmul(changes, columns, out=found[start : start + len(changes)])
         start += len(changes)
     return np.asarray(found + weights @ numbers, dtype=np.float64)
+
+
+def _one_ahead(blocks: Iterator[Changes]) -> Iterator[Changes]:
+    """Yield the blocks, each made while the one before is worked on."""
+    with ThreadPoolExecutor(max_workers=1) as maker:
+        coming = maker.submit(next, blocks, None)
+        while (block := coming.result()) is not None:
+            coming = maker.submit(next, blocks, None)
+            yield block
 
 
 def _weighted(

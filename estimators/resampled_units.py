@@ -23,7 +23,7 @@ Changes = NDArray[np.float32]
 
 _BITS = np.uint64(32)
 _PIECE = 2**17  # factors made at a time, few enough for the cache of a processor
-_KINDS = 2**16
+_KINDS = 2**16  # of a 16-bit number
 _LARGE = 400  # members of a group from which Poisson counts save time
 _SELDOM = 4  # standard deviations
 _LEAST = 0.5  # a unit without another in its stratum never counts less than this part of itself
@@ -41,6 +41,8 @@ class Resampling:
         Part of the variance between members that is to be shown; 0 where nothing is to vary.
     order : (J,) int
         Members that are redrawn, group by group.
+    firsts : (g,) int
+        Where each group starts in ``order``.
     starts, sizes : (S,) uint64
         For each of the S members redrawn: where its group starts in ``order``, and how many
         members that group has.
@@ -55,6 +57,7 @@ class Resampling:
     group: Codes
     parts: Floats
     order: Codes
+    firsts: Codes
     starts: NDArray[np.uint64]
     sizes: NDArray[np.uint64]
     stretches: Changes
@@ -97,19 +100,19 @@ class Resampling:
         """Do the same in a third of the time: independent Poisson counts, then the draws they lack.
 
         Given their sum, independent Poisson counts are plain draws, and so are the draws added.
+        Chances are kept to 1 in 65,536, the same for every member of a group.
         """
         shape = (replicates, len(self.order))
         raw = chance.integers(0, 2**64, shape[0] * shape[1] // 4 + 1, dtype=np.uint64)
         counts = rarities.take(raw.view(np.uint16)[: shape[0] * shape[1]].reshape(shape))
-        starts, where, wanted = np.unique(self.starts, return_index=True, return_counts=True)
-        starts = starts.astype(np.intp)
+        starts, ends = self.firsts, np.append(self.firsts[1:], shape[1])
+        wanted = ends - starts - 1
         lacks = wanted - np.add.reduceat(counts, starts, axis=1).astype(np.intp)
-        ends = np.append(starts[1:], shape[1])
         for row, group in np.argwhere(lacks < 0):  # too many: this group is drawn afresh
             counts[row, starts[group] : ends[group]] = 0
             lacks[row, group] = wanted[group]
         offsets = np.arange(replicates)[:, None] * shape[1] + starts
-        sizes = np.broadcast_to(self.sizes[where].astype(np.float64), lacks.shape)
+        sizes = np.broadcast_to(ends - starts, lacks.shape).ravel()
         fractions = chance.random(int(lacks.sum()))
         places = (fractions * np.repeat(sizes, lacks.ravel())).astype(np.intp)
         np.add.at(counts.reshape(-1), places + np.repeat(offsets, lacks.ravel()), np.float32(1))
@@ -141,6 +144,7 @@ def resampling(group: Codes, present: NDArray[np.bool_], parts: Floats) -> Resam
         group=group,
         parts=parts,
         order=order,
+        firsts=starts[redrawn > 0],
         starts=np.repeat(starts, draws).astype(np.uint64),
         sizes=np.repeat(redrawn, draws).astype(np.uint64),
         stretches=(reach * ratio)[group[order]].astype(np.float32),

@@ -152,8 +152,12 @@ def show_method(data: StudyData, figure: Figure, step: float | None = None) -> N
         f'<p class="hr-soft">Method: {as_html(method_name(figure))}; '
         f"{as_html(method_words(data, figure))}. From an endless universe: "
         f"{as_html(endless_words(figure, mark, step=step).between)}.</p>"
-        f'<p class="hr-soft">{as_html(limit_words(data.study.limit, mark))}.</p>'
+        f'<p class="hr-soft">{as_html(_capital(limit_words(data.study.limit, mark)))}.</p>'
     )
+
+
+def _capital(text: str) -> str:
+    return text[:1].upper() + text[1:]
 
 
 def _write_flag(name: str) -> None:

@@ -40,7 +40,7 @@ def show_keep(
 
 def _show_kept(database: Database, study: Study, kept: KeptFigure) -> None:
     st.html(f'<p class="hw-kept">Kept as figure {kept.position + 1} of the readout.</p>')
-    with st.container(horizontal=True):
+    with st.container(horizontal=True, vertical_alignment="center"):
         st.page_link(
             "screens/readouts.py", label="To the readout", query_params={"study": study.id}
         )

@@ -67,7 +67,7 @@ def _show_card(database: Database, data: StudyData, item: KeptFigure, *, last: b
         _show_wording(database, data, item)
     with right:
         _show_figure(data, item)
-        with st.container(horizontal=True):
+        with st.container(horizontal=True, vertical_alignment="center"):
             _move(database, item, "Up", -1, disabled=item.position == 0)
             _move(database, item, "Down", 1, disabled=last)
             st.button(

@@ -162,6 +162,9 @@ def test_what_does_not_fit_is_refused():
         replicate_sums(np.stack([np.ones(48), np.full(48, np.nan)], axis=1), left_out)
     with pytest.raises(InputError, match="must hold one entry for each of the 48 rows"):
         replicate_sums(np.ones((5, 2)), left_out)
+    census = SampleDesign.simple_random(9, population_size=9)
+    with pytest.raises(InputError, match="replicates must hold at least one"):
+        replicate_estimates(np.sum, replicate_weights(census, method="jackknife"))
     relative = replicate_weights(SampleDesign.simple_random(9))
     with pytest.raises(InputError, match="how large the universe is"):
         replicate_distribution(np.ones(9), relative, figure="total")
