@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import replace
 
 import numpy as np
-import pytest
 
 from app.study.sampling_plan import StratumCount
 from app.widgets.deliveries import deliver
@@ -28,7 +27,6 @@ def large_csv(rng, rows: int = 10_000, columns: int = 300) -> bytes:
     return "\n".join([head, *map(",".join, zip(*cells, strict=True))]).encode()
 
 
-@pytest.mark.slow
 def test_every_screen_opens(store, rng):
     study = deliver(store, "", large_csv(rng), "large.csv").study_id
     strata = tuple(StratumCount(name, 10_000) for name in REGIONS)
