@@ -37,6 +37,26 @@ class QuestionRecords(Records):
         """
         return tuple(stored.question for stored in self.stored_questions(study_id))
 
+    def question_stamp(self, study_id: str) -> str:
+        """Return a text that is another one after every change of the study's questions.
+
+        A saved question raises the sum of the versions; replaced questions all get a version
+        higher than any before. So no stamp comes back, not even after a moment without questions.
+
+        Raises
+        ------
+        UnknownStudyError
+            When the study is not there.
+        """
+        versions = questions.c.version
+        latest = func.max(questions.c.changed_at)
+        query = select(func.max(versions), func.sum(versions), func.count(), latest).where(
+            questions.c.study_id == study_id
+        )
+        with self._connections.reading() as connection:
+            check_study(connection, study_id)
+            return " ".join(str(number) for number in connection.execute(query).one())
+
     def stored_questions(self, study_id: str) -> tuple[StoredQuestion, ...]:
         """Return the study's questions in order, each with its version.
 

@@ -47,6 +47,17 @@ def _open(folder: str) -> Database:
     return open_database(Path(folder))
 
 
+def stored_questions(study_id: str) -> tuple[StoredQuestion, ...]:
+    """Return the questions as stored now; they are decoded only after a change."""
+    stamp = database().question_stamp(study_id)
+    return _decoded(str(_data_folder), study_id, stamp)
+
+
+@st.cache_resource(max_entries=16, show_spinner=False)
+def _decoded(folder: str, study_id: str, stamp: str) -> tuple[StoredQuestion, ...]:  # noqa: ARG001
+    return database().stored_questions(study_id)
+
+
 def read_file(file: StudyFile) -> FieldworkFile:
     """Return a stored file as read; the table is shared and must not be changed."""
     return _read(file.fingerprint, file.file_name, file.reading)

@@ -15,7 +15,7 @@ from app.study.questions import Question
 from app.study.study import Study, StudyFile
 from app.study.study_data import StudyData
 from app.widgets import address
-from app.widgets.cached_work import database, study_data
+from app.widgets.cached_work import database, stored_questions, study_data
 from app.widgets.plain_text import as_html, as_typed, shortened
 from app.widgets.screen_style import SCREEN_STYLE
 from app.widgets.workspace_style import workspace_style
@@ -77,7 +77,7 @@ def open_study() -> OpenStudy:
     return OpenStudy(
         study,
         store.current_file(study_id),
-        store.stored_questions(study_id),
+        stored_questions(study_id),
         store.plan(study_id),
     )
 

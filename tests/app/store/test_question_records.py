@@ -96,3 +96,17 @@ def test_replacing_that_fails_keeps_the_earlier_questions(database, study) -> No
     with pytest.raises(Exception, match="UNIQUE"):
         database.replace_questions(study.id, [NUMBER, NUMBER])
     assert database.questions(study.id) == (SCALE,)
+
+
+def test_no_stamp_comes_back(database, study):
+    seen = [database.question_stamp(study.id)]
+    first = [NUMBER, FULL, SCALE]
+    for _ in range(3):
+        database.replace_questions(study.id, first)
+        seen.append(database.question_stamp(study.id))
+        for stored in database.stored_questions(study.id):
+            database.save_question(study.id, stored.question, version=stored.version)
+            seen.append(database.question_stamp(study.id))
+        database.replace_questions(study.id, first[:1])
+        seen.append(database.question_stamp(study.id))
+    assert len(set(seen)) == len(seen) == 16
